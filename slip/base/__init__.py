@@ -1,0 +1,1 @@
+"""What lies under everything and knows no bolts: units, errors, formulas with their sources, data tables."""
