@@ -1,0 +1,32 @@
+"""The sliding face."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+
+@dataclass(frozen=True)
+class Roughness:
+    """Roughness of one face as the file gives it: label Ra, Rq or Rz, value in mm."""
+
+    label: str
+    value: float
+
+
+@dataclass(frozen=True)
+class Interface:
+    """The face that must not slip. Friction low and high with their source and basis; `parallel_faces` share the load side by side.
+
+    tangential_stiffness [N/mm^3] as (low, high) or None; pressure [MPa] of a face without bolts or None.
+    """
+
+    friction_low: float
+    friction_high: float
+    friction_source: str
+    friction_basis: str
+    parallel_faces: int
+    roughness: tuple[Roughness, Roughness] | None
+    tangential_stiffness: tuple[float, float] | None
+    pressure: float | None
+    run_in_friction: float | None
+    plate_shear: bool

@@ -1,0 +1,68 @@
+"""How the bolts were tightened and what is lost afterwards."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from slip.joint.material import Material
+
+Array = np.ndarray
+Range = tuple[float, float]
+
+
+@dataclass(frozen=True)
+class Scatter:
+    """Plus and minus `bound` (a share) about the nominal preload; `text` says where it comes from, `given` whether the file said it."""
+
+    bound: float
+    text: str
+    source: str
+    basis: str
+    given: bool
+
+
+@dataclass(frozen=True)
+class Torque:
+    """Tightening by torque [N mm]. Either both frictions or the nut factor; either a scatter or the accuracy of the tool (a share)."""
+
+    torque: float
+    thread_friction: Range | None
+    head_friction: Range | None
+    nut_factor: Range | None
+    prevailing: Range
+    scatter: Scatter | None
+    tool_accuracy: float | None
+
+
+@dataclass(frozen=True, eq=False)
+class Preload:
+    """Assembly preload given as lowest and highest per bolt, shape (n,) in N; `nominal` where a scatter made them, else None."""
+
+    low: Array
+    high: Array
+    nominal: Array | None
+    scatter: Scatter | None
+
+
+@dataclass(frozen=True)
+class Rises:
+    """Temperature rises since assembly in K: of the bolt and of each plate."""
+
+    bolt: float
+    plates: tuple[float, ...]
+
+
+@dataclass(frozen=True)
+class Losses:
+    """What the preload loses: embedding by the table (None), a length [mm] or a force [N]; relaxation as a share; thermal.
+
+    `thermal` is a loss in N, the rises, or None. `washer_material` carries the washers' expansion.
+    """
+
+    embedding_force: float | None
+    embedding_length: float | None
+    relaxation: float
+    thermal: float | Rises | None
+    washer_material: Material
