@@ -1,0 +1,1 @@
+"""The clamp force that is left: tightening, springs, losses, and what the loads relieve."""

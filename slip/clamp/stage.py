@@ -1,0 +1,165 @@
+"""The clamp ledger: for every load state and bolt the lowest clamp and the highest, with all that lies between."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from slip.base.notes import Note
+from slip.base.trace import Trace
+from slip.clamp import thread as screw
+from slip.clamp import tightening as tight
+from slip.clamp import working
+from slip.clamp.assembly import Assembly, assemble, stress_area
+from slip.clamp.states import States, states
+from slip.joint.joint import Joint
+from slip.joint.tightening import Torque
+
+Array = np.ndarray
+TORSION_FRICTION = (
+    0.20  # thread friction for the torsion when the file gives none: high, since more is worse (practice)
+)
+
+
+@dataclass(frozen=True, eq=False)
+class Ledger:
+    """Arrays (S, n) in N over states and bolts; yield_use is a share, None without a grade; bearing_pressure in MPa, None
+    where the bearing face is not known. relief: clamp taken by the axial load, negative where compression is credited."""
+
+    thermal_loss: Array
+    thermal_gain: Array
+    relief: Array
+    clamp_without_axial: Array
+    clamp_low: Array
+    clamp_high: Array
+    bolt_force_high: Array
+    yield_use: Array | None
+    bearing_pressure: Array | None
+    separation_factor: Array
+    open: Array
+    trace: Trace
+
+
+@dataclass(frozen=True, eq=False)
+class Clamp:
+    """What the clamp stage found: the bolts before load, the load states, the ledger, and what must be said."""
+
+    assembly: Assembly
+    states: States
+    ledger: Ledger
+    assumptions: tuple[Note, ...]
+    warnings: tuple[Note, ...]
+
+
+def clamp(joint: Joint) -> Clamp:
+    """The clamp stage of a joint."""
+    assembly, loaded = assemble(joint), states(joint)
+    notes: list[Note] = []
+    result = ledger(joint, assembly, loaded, notes)
+    assumptions = (*assembly.assumptions, *notes)
+    return Clamp(assembly, loaded, result, assumptions, tuple(_warnings(joint, assembly, result)))
+
+
+def ledger(joint: Joint, assembly: Assembly, loaded: States, notes: list[Note]) -> Ledger:
+    """The ledger of every state and bolt."""
+    trace = Trace()
+    loss, gain = _thermal(joint, assembly, loaded)
+    trace.given("thermal loss", "F_th", loss, "N", "statics", "derived")
+    trace.given("thermal gain, not credited to the lowest clamp", "F_gain", gain, "N", "statics", "derived")
+    if joint.axial.credit_compression:
+        values = {"Phi": assembly.share_low, "F_ax": loaded.axial, "Phi_c": assembly.share_high}
+        relief = trace("axial relief, compression credited", working.axial_relief_credited, **values)
+    else:
+        relief = trace("axial relief", working.axial_relief, Phi=assembly.share_low, F_ax=loaded.axial)
+    kept = {"F_low": assembly.low, "F_Z": assembly.embedding, "F_R": assembly.relaxation, "F_th": loss}
+    without = trace("lowest clamp without the axial load", working.clamp_without_axial, **kept)
+    low = trace("lowest clamp", working.clamp_low, **kept, relief=relief)
+    high = trace("highest clamp", working.clamp_high, F_high=assembly.high, F_gain=gain)
+    force = trace(
+        "highest bolt force",
+        working.bolt_force_high,
+        F_high=assembly.high,
+        F_gain=gain,
+        Phi=assembly.share_high,
+        F_ax=loaded.axial,
+    )
+    return Ledger(
+        thermal_loss=loss,
+        thermal_gain=gain,
+        relief=relief,
+        clamp_without_axial=without * np.ones_like(relief),
+        clamp_low=low,
+        clamp_high=high * np.ones_like(relief),
+        bolt_force_high=force,
+        yield_use=_yield_use(joint, assembly, force, trace, notes),
+        bearing_pressure=_bearing_pressure(joint, force, trace),
+        separation_factor=trace("separation factor", working.separation_factor, clamp_0=without, relief=relief),
+        open=low <= 0,
+        trace=trace,
+    )
+
+
+def _thermal(joint: Joint, assembly: Assembly, loaded: States) -> tuple[Array, Array]:
+    """Thermal loss and gain of every state and bolt; a case's own loss takes the place of the file's."""
+    own = [case.thermal for case in joint.cases]
+    given = np.array([own[i] is not None for i in loaded.case])[:, None]
+    typed = np.array([own[i] or 0.0 for i in loaded.case])[:, None]
+    return np.where(given, typed, assembly.thermal_loss), np.where(given, 0.0, assembly.thermal_gain)
+
+
+def _yield_use(joint: Joint, assembly: Assembly, force: Array, trace: Trace, notes: list[Note]) -> Array | None:
+    """Use of the bolt's yield strength by the highest bolt force and the full tightening torsion; None without a grade."""
+    bolt = joint.bolt
+    if bolt.grade is None or bolt.thread is None:
+        return None
+    area = stress_area(bolt.thread, trace)
+    if bolt.shank_diameter is not None:
+        area = min(area, float(screw.round_area(bolt.shank_diameter)))
+    d2 = trace("pitch diameter", screw.pitch_diameter, d=bolt.thread.diameter, P=bolt.thread.pitch)
+    given = joint.tightening.thread_friction if isinstance(joint.tightening, Torque) else None
+    if given is None:
+        text = f"thread friction {TORSION_FRICTION:g} for the torsion in the bolt"
+        notes.append(Note("torsion-friction", text, "tightening.thread_friction"))
+    friction = given[1] if given else TORSION_FRICTION
+    torque = trace(
+        "torsion in the bolt", tight.thread_torque, F=assembly.high, P=bolt.thread.pitch, d2=d2, mu_th=friction
+    )
+    shear = trace("torsional stress", tight.torsional_stress, M_G=torque, d0=float(np.sqrt(4 * area / np.pi)))
+    tension = trace("axial stress", working.axial_stress, F_bolt=force, A0=area)
+    both = trace("equivalent stress", tight.equivalent_stress, sigma=tension, tau=shear)
+    use: Array = trace("use of yield", tight.yield_use, sigma_eq=both, R_p=bolt.grade.yield_strength)
+    return use
+
+
+def _bearing_pressure(joint: Joint, force: Array, trace: Trace) -> Array | None:
+    """Pressure under the head at the highest bolt force; None where the bearing face is not known."""
+    d_w, d_h = joint.bolt.bearing_diameter, joint.bolt.hole_diameter
+    if d_w is None or d_h is None:
+        return None
+    pressure: Array = trace("pressure under the head", working.bearing_pressure, F_bolt=force, d_w=d_w, d_h=d_h)
+    return pressure
+
+
+def _warnings(joint: Joint, assembly: Assembly, found: Ledger) -> list[Note]:
+    """What a reviewer must know about the bolt and its bearing face."""
+    warnings = []
+    bolt, say = joint.bolt, joint.system.say
+    if bolt.grade is not None and bolt.thread is not None:
+        limit = bolt.grade.yield_strength * stress_area(bolt.thread, Trace())
+        highest = float(assembly.high.max())
+        if highest > limit:
+            text = f"highest preload {say(highest, 'force')} is above the bolt's yield, {say(limit, 'force')}"
+            warnings.append(Note("preload-above-yield", text, "tightening"))
+        elif found.yield_use is not None and float(found.yield_use.max()) > 1:
+            text = f"bolt force and tightening torsion use {found.yield_use.max():.3g} of yield"
+            warnings.append(Note("yield-use", text, "tightening"))
+    top = joint.plates[0].material if joint.plates else None
+    if top and top.yield_strength and found.bearing_pressure is not None:
+        pressure = float(found.bearing_pressure.max())
+        if pressure > top.yield_strength:
+            text = f"pressure under the head {say(pressure, 'pressure')} is above the yield of {top.name}"
+            warnings.append(Note("bearing-pressure", text, "bolt.bearing_diameter"))
+    if float(assembly.low.min()) <= 0:
+        warnings.append(Note("no-preload", "the lowest assembly preload is zero", "tightening"))
+    return warnings

@@ -1,0 +1,147 @@
+"""Load states: every end of every case as arrays, moved to the centroid and shared over the bolts."""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from itertools import product
+
+import numpy as np
+
+from slip.base.errors import InputError, Problems
+from slip.base.trace import Trace
+from slip.clamp import working
+from slip.joint.joint import Axial, Joint
+from slip.joint.loads import Case, Load
+from slip.joint.pattern import Pattern
+
+Array = np.ndarray
+STRAIGHT = 1e-9  # smaller over larger second moment below which the bolts stand in a line
+
+
+@dataclass(frozen=True, eq=False)
+class States:
+    """S load states over n bolts. case: index of the case, (S,); end: "given" or "other" of each state.
+
+    shear: force on each bolt, (2, S, n) in N; axial: external axial force at each bolt, (S, n) in N, tension positive;
+    load: resultant shear and its moment about the centroid of the pattern, (S, 3) in N, N mm.
+    """
+
+    case: Array
+    end: tuple[str, ...]
+    shear: Array
+    axial: Array
+    load: Array
+    trace: Trace
+
+
+def states(joint: Joint) -> States:
+    """All load states of the joint's cases; an unsigned case has one state for each combination of signs.
+
+    Raises Problems when a tilting moment meets a pattern that cannot carry it.
+    """
+    listed = [(i, end, load) for i, case in enumerate(joint.cases) for end, load in _expanded(case)]
+    owners = [joint.cases[i] for i, _, _ in listed]
+    loads = [load for _, _, load in listed]
+    trace = Trace()
+    # (S, 1) columns, so that they broadcast over the bolts
+    vx, vy = (np.array([[load.shear[axis]] for load in loads]) for axis in (0, 1))
+    axial = np.array([[load.axial] for load in loads])
+    each = np.array([[case.each_bolt] for case in owners])
+    total, moments = _at_centroid(joint.pattern, owners, loads, (vx, vy, axial), trace)
+    shear = _shared_shear(joint.pattern, vx, vy, moments[2], trace)
+    tension = _shared_tension(joint, owners, axial, moments[0], moments[1], trace)
+    if each.any():
+        shear = np.where(each, np.stack([vx, vy]), shear)
+        tension = np.where(each, _external(joint.axial, axial, trace), tension)
+        arms = joint.pattern.arms
+        turning = (arms[:, 0] * shear[1] - arms[:, 1] * shear[0]).sum(axis=-1)
+        own = np.stack([shear[0].sum(axis=-1), shear[1].sum(axis=-1), turning], axis=-1)
+        total = np.where(each, own, total)
+    return States(np.array([i for i, _, _ in listed]), tuple(end for _, end, _ in listed), shear, tension, total, trace)
+
+
+def _expanded(case: Case) -> Iterator[tuple[str, Load]]:
+    """The states of a case: its ends, or every combination of signs of an unsigned one."""
+    if not case.unsigned:
+        yield from case.ends
+        return
+    ((end, load),) = case.ends
+    values = (*load.shear, load.axial, *load.moment)
+    for signs in product(*((1.0, -1.0) if value else (1.0,) for value in values)):
+        vx, vy, f, mx, my, mz = (sign * abs(value) for sign, value in zip(signs, values, strict=True))
+        yield end, Load((vx, vy), f, (mx, my, mz))
+
+
+def _at_centroid(
+    pattern: Pattern, owners: list[Case], loads: list[Load], forces: tuple[Array, Array, Array], trace: Trace
+) -> tuple[Array, tuple[Array, Array, Array]]:
+    """Resultant (S, 3) of shear and turning moment, and the three moments (S, 1), at the centroid in the sliding face."""
+    xc, yc = pattern.centroid
+    x = np.array([[(case.at[0] - xc) if case.at else 0.0] for case in owners])
+    y = np.array([[(case.at[1] - yc) if case.at else 0.0] for case in owners])
+    z = np.array([[case.height or 0.0] for case in owners])
+    cx, cy, cz = (np.array([[load.moment[axis]] for load in loads]) for axis in range(3))
+    vx, vy, axial = forces
+    mx = trace("tilting moment about x", working.moment_x, C_x=cx, F_z=axial, y=y, z=z, V_y=vy)
+    my = trace("tilting moment about y", working.moment_y, C_y=cy, F_z=axial, x=x, z=z, V_x=vx)
+    mz = trace("turning moment at the centroid", working.moment_z, C_z=cz, x=x, V_y=vy, y=y, V_x=vx)
+    return np.concatenate([vx, vy, mz], axis=1), (mx, my, mz)
+
+
+def _shared_shear(pattern: Pattern, vx: Array, vy: Array, mz: Array, trace: Trace) -> Array:
+    """Shear on every bolt, (2, S, n), shared by equal springs about the centroid."""
+    n, (x, y) = pattern.count, pattern.arms.T
+    sum_r2 = float((pattern.arms**2).sum()) or 1.0  # one bolt: no arm, any value does
+    return np.stack(
+        [
+            trace("shear of the bolt along x", working.bolt_shear_x, V_x=vx, n=n, M_z=mz, y=y, sum_r2=sum_r2),
+            trace("shear of the bolt along y", working.bolt_shear_y, V_y=vy, n=n, M_z=mz, x=x, sum_r2=sum_r2),
+        ]
+    )
+
+
+def _shared_tension(joint: Joint, owners: list[Case], axial: Array, mx: Array, my: Array, trace: Trace) -> Array:
+    """External axial force at every bolt, (S, n): equal parts and the tilting moments in principal axes."""
+    arms = joint.pattern.arms
+    second, axes = np.linalg.eigh(arms.T @ arms)
+    u, v = arms @ axes[:, 0], arms @ axes[:, 1]
+    if np.linalg.det(axes) < 0:  # keep u, v right-handed, as x, y are
+        v, axes = -v, axes * np.array([1.0, -1.0])
+    mu, mv = (mx * axes[0, k] + my * axes[1, k] for k in (0, 1))
+    carried = second > STRAIGHT * max(float(second.max()), 1.0)
+    for moment, axis in ((mu, 1), (mv, 0)):  # a moment about u needs arms along v
+        if not carried[axis]:
+            _refuse_tilting(joint, owners, moment, np.abs(mx) + np.abs(my))
+    su, sv = (float(s) if ok else 1.0 for s, ok in zip(second, carried, strict=True))
+    u, v = (w if ok else np.zeros_like(w) for w, ok in zip((u, v), carried, strict=True))
+    values = {"n": joint.pattern.count, "M_u": mu, "v": v, "sum_v2": sv, "M_v": mv, "u": u, "sum_u2": su}
+    tension: Array = trace("external axial force at the bolt", working.bolt_tension, F_z=axial, **values)
+    return tension
+
+
+def _refuse_tilting(joint: Joint, owners: list[Case], moment: Array, scale: Array) -> None:
+    """Raise Problems for cases whose tilting moment has no arm in the pattern."""
+    wrong = np.abs(moment[:, 0]) > 1e-9 * scale[:, 0]
+    names = list(
+        dict.fromkeys(case.name for case, bad in zip(owners, wrong, strict=True) if bad and not case.each_bolt)
+    )
+    if names:
+        what = "one bolt" if joint.pattern.count == 1 else "bolts in a line"
+        found = f"a tilting moment on {what}, in {', '.join(names[:5])}"
+        expected = "a pattern with arms across the moment's axis"
+        remedy = "carry the moment by other means, or give bolt forces"
+        raise Problems([InputError("moment-not-carried", "case.moment", found, expected, remedy, joint.file)])
+
+
+def _external(axial: Axial, typed: Array, trace: Trace) -> Array:
+    """External axial force behind the typed axial force of each bolt."""
+    if axial.meaning == "bolt force":
+        name, function = "external axial force behind the bolt force", working.external_from_bolt_force
+        force: Array = trace(name, function, F_b=typed, F_0=axial.model_preload, Phi_m=axial.model_bolt_share)
+        return force
+    if axial.meaning == "bolt force change":
+        name, change = "external axial force behind the change of bolt force", working.external_from_change
+        force = trace(name, change, dF_b=typed, Phi_m=axial.model_bolt_share)
+        return force
+    return typed
