@@ -1,0 +1,1 @@
+"""What may be concluded: gross slip, standards, stiffness, fretting, loosening."""
