@@ -146,7 +146,7 @@ def _preload_from_torque(t: Torque, bolt: Bolt, trace: Trace) -> tuple[float, fl
     )
     low = float(trace("lowest preload", spread.lower_of, F_scatter=by_scatter, F_friction=by_friction))
     high = float(trace("highest preload", spread.higher_of, F_scatter=by_scatter_high, F_friction=by_friction_high))
-    said = f"scatter {scatter.bound:.3g} ({scatter.text})"
+    said = f"scatter {scatter.bound:.0%}"
     return (
         low,
         nominal,
@@ -157,8 +157,10 @@ def _preload_from_torque(t: Torque, bolt: Bolt, trace: Trace) -> tuple[float, fl
 
 
 def _springs(joint: Joint, trace: Trace, notes: list[Note]) -> Springs | None:
-    """Springs of bolt and plates, or None when no answer of this file needs them and the file does not describe them."""
+    """Springs of bolt and plates, or None when no answer of this file needs them or the file does not describe them."""
     bolt, plates = joint.bolt, clamped(joint.plates, joint.bolt.tapped)
+    if not _springs_needed(joint):
+        return None
     known = bolt.thread and bolt.bearing_diameter and bolt.hole_diameter and all(p.material for p in joint.plates)
     if not plates or not known:
         return None
@@ -176,6 +178,14 @@ def _springs(joint: Joint, trace: Trace, notes: list[Note]) -> Springs | None:
             "the same by 30 degree frusta, for comparison", "delta_P30", frustum, "mm/N", "shigley9", "published"
         )
     return Springs(stiff, soft, compliance * np.ones(joint.pattern.count), frustum)
+
+
+def _springs_needed(joint: Joint) -> bool:
+    """Whether embedding, unequal warming or the bolt's share of an axial load is to be worked out from springs."""
+    losses, axial = joint.losses, joint.axial
+    pulled = any(case.pulls for case in joint.cases)
+    shared = axial.load_introduction is not None or (axial.bolt_share is None and pulled)
+    return losses.embedding_force is None or isinstance(losses.thermal, Rises) or shared
 
 
 def _plate_compliance(

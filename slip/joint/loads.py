@@ -39,3 +39,8 @@ class Case:
     unsigned: bool
     cycles: float | None
     thermal: float | None
+
+    @property
+    def pulls(self) -> bool:
+        """Whether any end has an axial force, a tilting moment, or a shear with a height that overturns."""
+        return any(load.axial or load.moment[0] or load.moment[1] or self.height for _, load in self.ends)

@@ -124,10 +124,10 @@ def axial(
         )
     if introduction is not None and plates is not None and bolt is not None:
         need_springs(r, plates, bolt, "load_introduction", "give bolt_share")
-    if any(case.each_bolt and _has_axial(case) for case in cases or ()) and meaning is None:
+    if any(case.each_bolt and case.pulls for case in cases or ()) and meaning is None:
         write = 'add [axial] meaning = "external", "bolt force" or "bolt force change"'
         raise s.stop("meaning", "missing-key", "nothing", "what the axial force of each bolt is", write)
-    if any(_has_axial(case) for case in cases or ()) and share is None and introduction is None:
+    if any(case.pulls for case in cases or ()) and share is None and introduction is None:
         r.assume(
             "bolt-share", "bolt share 0 for the clamp, the full spring ratio for the bolt force", "axial.bolt_share"
         )
@@ -139,7 +139,3 @@ def axial(
         introduction,
         s.get("credit_compression", False),
     )
-
-
-def _has_axial(case: Case) -> bool:
-    return any(load.axial != 0 or load.moment[0] != 0 or load.moment[1] != 0 or case.height for _, load in case.ends)

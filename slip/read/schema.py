@@ -64,7 +64,7 @@ TABLES: dict[str, str] = {
 SLIP, CLAMP, BOLT, PARTIAL = "slip", "clamp from torque", "bolt load", "partial slip"
 
 KEYS: tuple[Key, ...] = (
-    Key("", "format", "whole", "version of this file format", least=1, most=1, default="1"),
+    Key("", "format", "whole", "version of this file format", least=1, most=1, needed_for="every answer"),
     Key("", "title", "text", "what the joint is"),
     Key("", "units", "choice", "system of bare numbers", choices=("N mm", "lbf in"), needed_for="bare numbers"),
     # bolt

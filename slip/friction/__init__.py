@@ -1,0 +1,1 @@
+"""Traction, slip and energy in the interface."""

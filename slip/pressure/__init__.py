@@ -1,0 +1,1 @@
+"""How the clamp presses on the face round a bolt."""

@@ -1,0 +1,222 @@
+"""The standards that the file lists, applied to one end of a case: what each needs taken from the joint, nothing mixed."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+
+import numpy as np
+
+from slip.base.trace import Trace
+from slip.clamp.assembly import stress_area
+from slip.clamp.stage import Clamp
+from slip.friction.stage import Slip
+from slip.joint.joint import Joint, Standard
+from slip.pressure.stage import Pressure
+from slip.verdict.checks import Check, first_least
+from slip.verdict.standards import aisc360, en1993, nasa5020, vdi2230
+from slip.verdict.standards.common import Judgement
+
+Array = np.ndarray
+
+
+class NotComparable(Exception):
+    """The file lacks something that the standard needs; the text says what to add."""
+
+
+@dataclass(frozen=True, eq=False)
+class Entry:
+    """One standard's answer for one end of a case: the judgement, or None with the reason why there is none."""
+
+    standard: Standard
+    judgement: Judgement | None
+    check: Check
+
+
+@dataclass(frozen=True, eq=False)
+class Inputs:
+    """What a standard may draw on for one load state; arrays (n,) over bolts, loads already at the standard's level."""
+
+    joint: Joint
+    options: dict[str, object]
+    shear: Array
+    tension: Array
+    force: float
+    moment: float
+    clamp: Array
+    nominal: float
+    relaxation: float
+    thermal_loss: float
+    alternating: bool
+    friction_radius: float
+
+    def need(self, key: str) -> object:
+        """A value of the entry; NotComparable names the key when the file is silent."""
+        if self.options.get(key) is None:
+            raise NotComparable(f"add {key} to the standard's entry")
+        return self.options[key]
+
+
+def judge_standard(
+    joint: Joint, clamp: Clamp, slip: Slip, pressure: Pressure, standard: Standard, case: int, end: str, rows: Array
+) -> Entry:
+    """The worst load state of one end against one standard."""
+    name = joint.cases[case].name
+    level = standard.to_standard_level
+    if level is None:
+        return _unsolved(
+            standard, name, end, "not compared: give to_standard_level, the factor from your loads to its level"
+        )
+    judged: list[Judgement] = []
+    try:
+        for row in rows:
+            judged.append(APPLY[standard.name](_inputs(joint, clamp, slip, pressure, standard, int(row), level)))
+    except (NotComparable, ValueError) as error:
+        return _unsolved(standard, name, end, f"not compared: {error}")
+    reserves = np.array([float(np.min(j.reserve_factor)) for j in judged])
+    worst = judged[first_least(reserves)]
+    reserve = float(reserves.min())
+    unmet = list(worst.unmet)
+    lowest = float(clamp.assembly.low.min())
+    if worst.presumed_preload is not None and lowest < worst.presumed_preload:
+        say = joint.system.say
+        unmet.append(
+            f"lowest preload {say(lowest, 'force')} is below the {say(worst.presumed_preload, 'force')} that it presumes"
+        )
+    bolt = joint.pattern.names[worst.governing] if np.ndim(worst.utilisation) else ""
+    check = Check(
+        check=f"standard.{standard.label}",
+        case=name,
+        end=end,
+        bolt=bolt,
+        safety=None,
+        load_factor=None,
+        required=None,
+        reserve_factor=reserve,
+        holds=bool(reserve >= 1 and not unmet),
+        decides=True,
+        reason="; ".join(unmet),
+    )
+    return Entry(standard, worst, check)
+
+
+def _unsolved(standard: Standard, case: str, end: str, reason: str) -> Entry:
+    check = Check(
+        f"standard.{standard.label}", case, end, "", None, None, None, None, False, True, reason, solved=False
+    )
+    return Entry(standard, None, check)
+
+
+def _inputs(
+    joint: Joint, clamp: Clamp, slip: Slip, pressure: Pressure, standard: Standard, row: int, level: float
+) -> Inputs:
+    """Loads of one state at the standard's level; the clamp is the lowest one under the raised axial load."""
+    ledger, states = clamp.ledger, clamp.states
+    raised = ledger.clamp_without_axial[row] - level * ledger.relief[row]
+    return Inputs(
+        joint=joint,
+        options=dict(standard.options),
+        shear=level * slip.shear[row],
+        tension=level * np.maximum(states.axial[row], 0.0),
+        force=level * float(np.hypot(states.load[row, 0], states.load[row, 1])),
+        moment=level * abs(float(states.load[row, 2])),
+        clamp=raised,
+        nominal=float(clamp.assembly.nominal.min()),
+        relaxation=joint.losses.relaxation,
+        thermal_loss=float(ledger.thermal_loss[row].max()),
+        alternating=joint.cases[states.case[row]].alternating,
+        friction_radius=pressure.patch.friction_radius if pressure.patch else 0.0,
+    )
+
+
+def _one_bolt_without_torque(i: Inputs) -> None:
+    """Standards that share shear over bolts have no answer for a torque on a single bolt."""
+    if i.joint.pattern.count == 1 and i.moment > 0:
+        raise NotComparable("it has no rule for a torque on a single bolt")
+
+
+def _slip_factor(i: Inputs, word: str) -> float | str:
+    """The slip factor as a number, or the class under `word`."""
+    if i.options.get("slip_factor") is not None:
+        return float(i.options["slip_factor"])  # type: ignore[arg-type]
+    return str(i.need(word))
+
+
+def _en1993(i: Inputs) -> Judgement:
+    _one_bolt_without_torque(i)
+    bolt = i.joint.bolt
+    if bolt.thread is None or bolt.grade is None:
+        raise NotComparable("it needs thread and grade of the bolt")
+    return en1993.judge(
+        shear=i.shear,
+        tension=i.tension,
+        n_faces=i.joint.interface.parallel_faces,
+        tensile_strength=bolt.grade.tensile_nominal,
+        stress_area=stress_area(bolt.thread, Trace()),
+        slip_factor=_slip_factor(i, "slip_class"),
+        category=str(i.need("category")),
+        hole=str(i.options.get("hole") or "normal"),
+        slot=str(i.options.get("slot") or ""),
+    )
+
+
+def _aisc360(i: Inputs) -> Judgement:
+    _one_bolt_without_torque(i)
+    bolt = i.joint.bolt
+    if bolt.thread is None or bolt.grade is None:
+        raise NotComparable("it needs thread and grade of the bolt")
+    return aisc360.judge(
+        shear=i.shear,
+        tension=i.tension,
+        n_faces=i.joint.interface.parallel_faces,
+        size=bolt.thread.designation.rsplit(" ", 1)[0] if bolt.thread.unified else bolt.thread.designation,
+        group=bolt.grade.name.split("-")[0],
+        slip_factor=_slip_factor(i, "surface"),
+        method=str(i.need("method")),
+        edition=str(i.options.get("edition") or "2016"),
+        hole=str(i.options.get("hole") or "normal"),
+        slot=str(i.options.get("slot") or ""),
+        filler_factor=float(i.options.get("filler_factor") or 1.0),  # type: ignore[arg-type]
+        limit=str(i.options.get("limit") or "strength"),
+    )
+
+
+def _vdi2230(i: Inputs) -> Judgement:
+    turning = i.moment if i.joint.pattern.count == 1 else 0.0
+    return vdi2230.judge(
+        shear=i.shear,
+        residual_clamp=i.clamp,
+        n_faces=i.joint.interface.parallel_faces,
+        friction=i.joint.interface.friction_low,
+        kind="alternating" if i.alternating else "static",
+        torque=turning,
+        friction_radius=float(i.options.get("friction_radius") or i.friction_radius),  # type: ignore[arg-type]
+    )
+
+
+def _nasa5020(i: Inputs) -> Judgement:
+    if i.moment > 0:
+        raise NotComparable("it has no rule for a moment about the normal")
+    return nasa5020.judge(
+        shear=i.force,
+        tension=float(i.tension.sum()),
+        n_faces=i.joint.interface.parallel_faces,
+        n_fasteners=i.joint.pattern.count,
+        nominal_preload=i.nominal,
+        preload_variation=float(i.need("preload_variation")),  # type: ignore[arg-type]
+        friction=i.joint.interface.friction_low,
+        safety_factor=float(i.need("safety_factor")),  # type: ignore[arg-type]
+        fitting_factor=float(i.options.get("fitting_factor") or 1.0),  # type: ignore[arg-type]
+        surface=str(i.options.get("surface") or "other"),
+        c_min=float(i.options.get("c_min") or 1.0),  # type: ignore[arg-type]
+        relaxation=i.relaxation,
+        thermal_loss=i.thermal_loss,
+    )
+
+
+APPLY: dict[str, Callable[[Inputs], Judgement]] = {
+    "EN 1993-1-8": _en1993,
+    "AISC 360": _aisc360,
+    "VDI 2230": _vdi2230,
+    "NASA-STD-5020": _nasa5020,
+}
