@@ -1,0 +1,190 @@
+"""The result for programs: the contract's JSON, numbers in the file's units and unrounded, what was not computed absent."""
+
+from __future__ import annotations
+
+import json
+import math
+from typing import Any
+
+import numpy as np
+
+import slip
+from slip.assess import Assessment
+from slip.base.errors import Problems
+from slip.base.formulas import citation
+from slip.base.units import System
+from slip.report.equations import Explanation
+from slip.verdict.checks import Check
+from slip.verdict.gross_slip import End
+
+FORMAT = 1
+UNITS = ("force", "length", "pressure", "moment", "temperature rise", "stiffness per area", "energy")
+
+
+def result(assessment: Assessment, units: System | None = None) -> dict[str, Any]:
+    """The assessment as plain dictionaries and lists, in the units of the file or of `units`."""
+    joint, verdict = assessment.joint, assessment.verdict
+    system = units or joint.system
+    grows = joint.required.grows
+    return {
+        "format": FORMAT,
+        "title": joint.title,
+        "tool": {"name": "slip", "version": slip.__version__},
+        "input_digest": joint.digest,
+        "units": {kind.replace(" ", "_"): system.unit(kind) for kind in UNITS},
+        "holds": verdict.holds,
+        "governing": _governing(verdict.governing, grows),
+        "answers": {"slip": _answer(assessment), "stiffness": "not assessed", "cycles": "not assessed"},
+        "assumptions": [note.as_dict() for note in assessment.assumptions],
+        "warnings": [note.as_dict() for note in assessment.warnings],
+        "checks": [_check(check) for check in verdict.checks],
+        "cases": [_case(assessment, i, system) for i in range(len(joint.cases))],
+    }
+
+
+def text(assessment: Assessment, units: System | None = None) -> str:
+    """The result as JSON text; NaN and infinity cannot occur in it."""
+    return json.dumps(result(assessment, units), indent=2, ensure_ascii=False, allow_nan=False)
+
+
+def explanation_text(explanation: Explanation) -> str:
+    """An explanation as JSON text, with the citations of its source keys."""
+    keys = dict.fromkeys(key for line in explanation.lines for key in line.source.split(";"))
+    found = {
+        "format": FORMAT,
+        "case": explanation.case,
+        "end": explanation.end,
+        "bolt": explanation.bolt,
+        "lines": [line.as_dict() for line in explanation.lines],
+        "sources": {key: said for key in keys if (said := citation(key))},
+    }
+    return json.dumps(found, indent=2, ensure_ascii=False, allow_nan=False)
+
+
+def errors_text(problems: Problems) -> str:
+    """Input errors as the contract's JSON text."""
+    listed = [error.as_dict() for error in problems.errors]
+    return json.dumps({"format": FORMAT, "errors": listed}, indent=2, ensure_ascii=False)
+
+
+def _answer(assessment: Assessment) -> str:
+    """The answer to the first question; limits of the other two questions do not count here."""
+    slipping = [c for c in assessment.verdict.checks if c.decides and c.check not in ("true_slip", "loosening")]
+    if all(check.holds for check in slipping):
+        return "holds"
+    return "fails" if any(check.solved and not check.holds for check in slipping) else "not assessed"
+
+
+def _put(target: dict[str, Any], **values: Any) -> dict[str, Any]:
+    """Add the values that say something: not None, not empty, not infinite."""
+    for name, value in values.items():
+        if value is None or value == "" or (isinstance(value, float) and math.isinf(value)):
+            continue
+        target[name] = value
+    return target
+
+
+def _governing(check: Check, grows: str) -> dict[str, Any]:
+    found = _put({}, case=check.case, end=check.end)
+    found["check"] = check.check
+    return _put(
+        found,
+        bolt=check.bolt,
+        factor=check.factor(grows),
+        required=check.required,
+        reserve_factor=check.reserve_factor,
+        reason=check.reason,
+    )
+
+
+def _check(check: Check) -> dict[str, Any]:
+    found = _put({}, case=check.case, end=check.end)
+    found["check"] = check.check
+    _put(
+        found,
+        bolt=check.bolt,
+        safety=check.safety,
+        load_factor=check.load_factor,
+        required=check.required,
+        reserve_factor=check.reserve_factor,
+    )
+    found |= {"holds": check.holds, "decides": check.decides}
+    return _put(found, reason=check.reason)
+
+
+def _case(assessment: Assessment, i: int, system: System) -> dict[str, Any]:
+    case = assessment.joint.cases[i]
+    ends = [end for end in assessment.verdict.ends if end.case == i]
+    return {
+        "name": case.name,
+        "kind": "alternating" if case.alternating else "static",
+        "ends": [_end(assessment, end, system) for end in ends],
+    }
+
+
+def _end(assessment: Assessment, end: End, system: System) -> dict[str, Any]:
+    found: dict[str, Any] = {
+        "end": end.end,
+        "ledger": ledger(assessment, end.state, system),
+        "gross_slip": _gross_slip(assessment, end),
+    }
+    entries = assessment.verdict.standards[end.case, end.end]
+    if entries:
+        found["standards"] = [
+            {
+                "standard": entry.standard.label,
+                "resistance": system.out(
+                    float(np.ravel(entry.judgement.resistance)[entry.judgement.governing]), "force"
+                ),
+                "demand": system.out(float(np.ravel(entry.judgement.demand)[entry.judgement.governing]), "force"),
+                "utilisation": entry.judgement.worst,
+                "basis": entry.judgement.basis,
+            }
+            for entry in entries
+            if entry.judgement is not None and math.isfinite(entry.judgement.worst)
+        ]
+    return found
+
+
+def ledger(assessment: Assessment, state: int, system: System) -> list[dict[str, Any]]:
+    """The clamp ledger of one load state, a row for each bolt."""
+    clamp, slipping = assessment.clamp, assessment.slip
+    a, found = clamp.assembly, clamp.ledger
+    forces = {
+        "assembly_low": a.low,
+        "assembly_high": a.high,
+        "embedding": a.embedding,
+        "relaxation": a.relaxation,
+        "thermal_loss": found.thermal_loss[state],
+        "thermal_gain": found.thermal_gain[state],
+        "axial_relief": found.relief[state],
+        "clamp_low": found.clamp_low[state],
+        "clamp_high": found.clamp_high[state],
+        "bolt_force_high": found.bolt_force_high[state],
+    }
+    rows = []
+    for i, name in enumerate(assessment.joint.pattern.names):
+        row: dict[str, Any] = {"bolt": name}
+        row |= {key: system.out(float(values[i]), "force") for key, values in forces.items()}
+        if found.yield_use is not None:
+            row["yield_use"] = float(found.yield_use[state, i])
+        if found.bearing_pressure is not None:
+            row["bearing_pressure_high"] = system.out(float(found.bearing_pressure[state, i]), "pressure")
+        _put(row, separation_factor=float(found.separation_factor[state, i]))
+        row["open"] = bool(found.open[state, i])
+        row["shear"] = system.out(float(slipping.shear[state, i]), "force")
+        rows.append(row)
+    return rows
+
+
+def _gross_slip(assessment: Assessment, end: End) -> dict[str, Any]:
+    """The three factors of an end, each with the clamp held and with all loads growing."""
+    checks = {check.check: check for check in end.checks}
+    found: dict[str, Any] = {}
+    for name in ("per_bolt", "group", "force_only"):
+        check = checks[f"gross_slip.{name}"]
+        found[name] = _put({}, safety=check.safety, load_factor=check.load_factor, bolt=check.bolt)
+    centre = assessment.slip.group.centre[end.group_state] + assessment.joint.pattern.centroid
+    if np.isfinite(centre).all():
+        found["group"]["centre"] = [float(x) for x in centre]
+    return found
