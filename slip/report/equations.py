@@ -11,8 +11,14 @@ import numpy as np
 
 from slip.assess import Assessment
 from slip.base.errors import InputError, Problems
+from slip.base.tables import Row
 from slip.base.trace import Step
+from slip.joint.joint import Joint
+from slip.read import library
 from slip.verdict.checks import first_least
+from slip.verdict.gross_slip import End
+
+FILE = "file", "given"
 
 
 @dataclass(frozen=True)
@@ -50,23 +56,21 @@ def explain(assessment: Assessment, case: str | None = None, bolt: str | None = 
 
     Raises Problems for a case or bolt that the joint has not.
     """
-    joint, verdict = assessment.joint, assessment.verdict
-    case = case or verdict.governing.case or joint.cases[0].name
+    joint, governing = assessment.joint, assessment.verdict.governing
+    case = case or governing.case or joint.cases[0].name
     index = _find(assessment, "case", case, [c.name for c in joint.cases])
-    ends = [end for end in verdict.ends if end.case == index]
+    which = None if bolt is None else _find(assessment, "bolt", bolt, list(joint.pattern.names))
+    ends = [end for end in assessment.verdict.ends if end.case == index]
+    if which is None and case == governing.case:
+        ends = [end for end in ends if end.end == governing.end]
+        which = joint.pattern.names.index(governing.bolt) if governing.bolt else None
     slipping = assessment.slip
     factors = slipping.bolt_load_factor if joint.required.grows == "all loads" else slipping.bolt_safety
-    if bolt is None:
-        own = [end for end in ends if case == verdict.governing.case and end.end == verdict.governing.end]
-        end = own[0] if own else ends[first_least(np.array([factors[e.state, e.bolt] for e in ends]))]
-        state, which = end.state, end.bolt
-    else:
-        which = _find(assessment, "bolt", bolt, list(joint.pattern.names))
-        rows = np.flatnonzero(assessment.clamp.states.case == index)
-        state = int(rows[first_least(factors[rows, which])])
-    end_name = assessment.clamp.states.end[state]
-    lines = tuple(_lines(assessment, index, end_name, state, which))
-    return Explanation(case, end_name, joint.pattern.names[which], lines)
+    bolts = [end.bolt if which is None else which for end in ends]
+    least = [factors[end.bolt_states[b], b] for end, b in zip(ends, bolts, strict=True)]
+    chosen = first_least(np.array(least))
+    end, shown = ends[chosen], bolts[chosen]
+    return Explanation(case, end.end, joint.pattern.names[shown], tuple(_lines(assessment, end, shown)))
 
 
 def _find(assessment: Assessment, what: str, name: str, names: list[str]) -> int:
@@ -78,64 +82,102 @@ def _find(assessment: Assessment, what: str, name: str, names: list[str]) -> int
     )
 
 
-def _lines(assessment: Assessment, case: int, end: str, state: int, bolt: int) -> Iterator[Line]:
-    clamp, seen = assessment.clamp, set[tuple[str, str]]()
-    joint = assessment.joint
-    friction = joint.interface
-    yield Line(
-        "friction",
-        "lowest friction of the sliding face",
-        "mu",
-        "value",
-        f"{friction.friction_low:.8g}",
-        friction.friction_low,
-        "",
-        f"{friction.friction_source}",
-        friction.friction_basis,
-        "",
+def _lines(assessment: Assessment, end: End, bolt: int) -> Iterator[Line]:
+    clamp, slipping = assessment.clamp, assessment.slip
+    yield from _inputs(assessment.joint)
+    state = end.bolt_states[bolt]
+    held, grown = (_worst(assessment, end, f) for f in (slipping.group.factor, slipping.group_load_factor))
+    alone, alone_grown = (_worst(assessment, end, f) for f in (slipping.force_safety, slipping.force_load_factor))
+    group, force = slipping.group_trace.steps, slipping.force_trace.steps
+    parts = (
+        ("before load", clamp.assembly.trace.steps, state),
+        ("load", clamp.states.trace.steps, state),
+        ("clamp", clamp.ledger.trace.steps, state),
+        ("slip of the bolt", slipping.trace.steps, state),
+        ("slip of the group", group[: len(group) // 2], held),
+        ("slip of the group", group[len(group) // 2 :], grown),
+        ("force alone", force[: len(force) // 2], alone),
+        ("force alone", force[len(force) // 2 :], alone_grown),
     )
-    groups = (
-        ("before load", clamp.assembly.trace.steps),
-        ("load", clamp.states.trace.steps),
-        ("clamp", clamp.ledger.trace.steps),
-        ("slip", assessment.slip.trace.steps),
-    )
-    shape = clamp.ledger.clamp_low.shape
-    for group, steps in groups:
-        for line in _picked(group, steps, shape, state, bolt):
+    shape, seen = clamp.ledger.clamp_low.shape, set[tuple[str, str]]()
+    for title, steps, row in parts:
+        said = title if row == state else f"{title}, another combination of signs"
+        for line in _picked(said, steps, shape, row, bolt):
             if (line.name, line.put_in) not in seen:
                 seen.add((line.name, line.put_in))
                 yield line
-    for entry in assessment.verdict.standards[case, end]:
-        if entry.judgement is None:
-            continue
-        for function, values, result in entry.judgement.steps:
-            f = function.formula  # type: ignore[attr-defined]
-            name = function.__name__.replace("_", " ")
-            yield Line(
-                entry.standard.label,
-                name,
-                f.symbol,
-                f.text,
-                f.put_in(values),
-                result,
-                f.unit,
-                f.source,
-                f.basis,
-                f.valid,
-            )
+    yield from _standards(assessment, end)
+
+
+def _worst(assessment: Assessment, end: End, factors: np.ndarray) -> int:
+    """The load state of an end with the smallest of factors (S,); there are several only when the case is unsigned."""
+    states = assessment.clamp.states
+    rows = np.flatnonzero((states.case == end.case) & (np.array(states.end) == end.end))
+    return int(rows[first_least(factors[rows])])
+
+
+def _inputs(joint: Joint) -> Iterator[Line]:
+    """What the tables or the file give and no formula yields, with the source of each."""
+
+    def line(name: str, symbol: str, value: float, unit: str, origin: tuple[str, str]) -> Line:
+        shown = f"{value:.8g}"
+        return Line("inputs", name, symbol, "value", shown, value, unit, *origin, "")
+
+    face, bolt = joint.interface, joint.bolt
+    yield line(
+        "lowest friction of the sliding face", "mu", face.friction_low, "", (face.friction_source, face.friction_basis)
+    )
+    if bolt.thread:
+        origin = bolt.thread.source, bolt.thread.basis
+        yield line(f"thread {bolt.thread.designation}, diameter", "d", bolt.thread.diameter, "mm", origin)
+        yield line(f"thread {bolt.thread.designation}, pitch", "P", bolt.thread.pitch, "mm", origin)
+    if bolt.grade:
+        yield line(
+            "yield strength of the bolt", "R_p", bolt.grade.yield_strength, "MPa", (bolt.grade.source, bolt.grade.basis)
+        )
+    if bolt.bearing_diameter is not None:
+        row = library.bearing_diameter(bolt.head, bolt.thread) if bolt.thread else None
+        origin = _origin(joint, "bolt.bearing_diameter", row)
+        yield line("bearing diameter under the head", "d_w", bolt.bearing_diameter, "mm", origin)
+    if bolt.hole_diameter is not None:
+        row = library.clearance_hole(bolt.thread) if bolt.thread else None
+        yield line("clearance hole", "d_h", bolt.hole_diameter, "mm", _origin(joint, "bolt.hole_diameter", row))
+    scatter = joint.tightening.scatter
+    if scatter is not None:
+        yield line(f"scatter, {scatter.text}", "t", scatter.bound, "", (scatter.source, scatter.basis))
+    if joint.plates:  # the springs, where they are needed, take these
+        materials = {"bolt and washers": bolt.material} | {p.name: p.material for p in joint.plates if p.material}
+        for name, m in materials.items():
+            yield line(f"modulus of {name}, {m.name}", "E", m.youngs_modulus, "MPa", (m.source, m.basis))
+
+
+def _origin(joint: Joint, key: str, row: Row | None) -> tuple[str, str]:
+    """Source and basis of the table row that a silent file falls back to, or the file."""
+    assumed = any(note.key == key for note in joint.assumptions)
+    return (row["source"], row["basis"]) if assumed and row is not None else FILE
 
 
 def _picked(group: str, steps: Iterable[Step], shape: tuple[int, int], state: int, bolt: int) -> Iterator[Line]:
     """Steps with the values of one state and bolt; a result that is not finite (nothing limits) has no line."""
 
     def pick(value: Any) -> float:
-        return float(np.broadcast_to(np.asarray(value, dtype=float), shape)[state, bolt])
+        return float(np.broadcast_to(np.asarray(value, dtype=float), shape)[state, bolt]) + 0.0  # no -0
 
     for step in steps:
         result, f = pick(step.result), step.formula
         if math.isfinite(result):
-            values = {name: pick(value) for name, value in step.values.items()}
-            yield Line(
-                group, step.name, f.symbol, f.text, f.put_in(values), result, f.unit, step.source, step.basis, f.valid
-            )
+            shown = f.put_in({name: pick(value) for name, value in step.values.items()})
+            yield Line(group, step.name, f.symbol, f.text, shown, result, f.unit, step.source, step.basis, f.valid)
+
+
+def _standards(assessment: Assessment, end: End) -> Iterator[Line]:
+    """The formulas of every standard that was compared, for the bolt that it judges worst."""
+    for entry in assessment.verdict.standards[end.case, end.end]:
+        if entry.judgement is None:
+            continue
+        title = f"{entry.standard.label}, bolt {entry.check.bolt}" if entry.check.bolt else entry.standard.label
+        for function, values, result in entry.judgement.steps:
+            f = function.formula  # type: ignore[attr-defined]
+            name = function.__name__.replace("_", " ")
+            shown = f.put_in({key: value + 0.0 for key, value in values.items()})
+            yield Line(title, name, f.symbol, f.text, shown, result + 0.0, f.unit, f.source, f.basis, f.valid)

@@ -4,18 +4,20 @@ from __future__ import annotations
 
 import json
 import math
+from collections.abc import Sequence
 from typing import Any
 
 import numpy as np
 
 import slip
 from slip.assess import Assessment
-from slip.base.errors import Problems
+from slip.base.errors import InputError, NotConverged, Problems
 from slip.base.formulas import citation
 from slip.base.units import System
 from slip.report.equations import Explanation
 from slip.verdict.checks import Check
 from slip.verdict.gross_slip import End
+from slip.verdict.standards.common import Judgement
 
 FORMAT = 1
 UNITS = ("force", "length", "pressure", "moment", "temperature rise", "stiffness per area", "energy")
@@ -61,9 +63,11 @@ def explanation_text(explanation: Explanation) -> str:
     return json.dumps(found, indent=2, ensure_ascii=False, allow_nan=False)
 
 
-def errors_text(problems: Problems) -> str:
-    """Input errors as the contract's JSON text."""
-    listed = [error.as_dict() for error in problems.errors]
+def errors_text(error: Problems | NotConverged) -> str:
+    """Input errors, or an answer that could not be proven, as the contract's JSON text."""
+    if isinstance(error, NotConverged):
+        error = Problems([InputError(error.code, "", str(error), "an answer proven to 1e-8", "see found")])
+    listed = [one.as_dict() for one in error.errors]
     return json.dumps({"format": FORMAT, "errors": listed}, indent=2, ensure_ascii=False)
 
 
@@ -125,59 +129,62 @@ def _case(assessment: Assessment, i: int, system: System) -> dict[str, Any]:
 def _end(assessment: Assessment, end: End, system: System) -> dict[str, Any]:
     found: dict[str, Any] = {
         "end": end.end,
-        "ledger": ledger(assessment, end.state, system),
-        "gross_slip": _gross_slip(assessment, end),
+        "ledger": ledger(assessment, end.bolt_states, system),
+        "gross_slip": _gross_slip(assessment, end, system),
     }
     entries = assessment.verdict.standards[end.case, end.end]
     if entries:
         found["standards"] = [
-            {
-                "standard": entry.standard.label,
-                "resistance": system.out(
-                    float(np.ravel(entry.judgement.resistance)[entry.judgement.governing]), "force"
-                ),
-                "demand": system.out(float(np.ravel(entry.judgement.demand)[entry.judgement.governing]), "force"),
-                "utilisation": entry.judgement.worst,
-                "basis": entry.judgement.basis,
-            }
-            for entry in entries
-            if entry.judgement is not None and math.isfinite(entry.judgement.worst)
+            _standard(entry.standard.label, entry.judgement, system) for entry in entries if entry.judgement is not None
         ]
     return found
 
 
-def ledger(assessment: Assessment, state: int, system: System) -> list[dict[str, Any]]:
-    """The clamp ledger of one load state, a row for each bolt."""
+def _standard(label: str, judgement: Judgement, system: System) -> dict[str, Any]:
+    """A standard's answer for its governing bolt; without resistance there is no finite utilisation."""
+    resistance, demand = (np.ravel(forces)[judgement.governing] for forces in (judgement.resistance, judgement.demand))
+    found: dict[str, Any] = {
+        "standard": label,
+        "resistance": system.out(float(resistance), "force"),
+        "demand": system.out(float(demand), "force"),
+    }
+    return _put(found, utilisation=judgement.worst, basis=judgement.basis)
+
+
+def ledger(assessment: Assessment, states: int | Sequence[int], system: System) -> list[dict[str, Any]]:
+    """The clamp ledger, a row for each bolt: of one load state, or of a state for each bolt."""
     clamp, slipping = assessment.clamp, assessment.slip
     a, found = clamp.assembly, clamp.ledger
+    bolts = np.arange(assessment.joint.pattern.count)
+    at = np.broadcast_to(states, bolts.shape), bolts
     forces = {
         "assembly_low": a.low,
         "assembly_high": a.high,
         "embedding": a.embedding,
         "relaxation": a.relaxation,
-        "thermal_loss": found.thermal_loss[state],
-        "thermal_gain": found.thermal_gain[state],
-        "axial_relief": found.relief[state],
-        "clamp_low": found.clamp_low[state],
-        "clamp_high": found.clamp_high[state],
-        "bolt_force_high": found.bolt_force_high[state],
+        "thermal_loss": found.thermal_loss[at],
+        "thermal_gain": found.thermal_gain[at],
+        "axial_relief": found.relief[at],
+        "clamp_low": found.clamp_low[at],
+        "clamp_high": found.clamp_high[at],
+        "bolt_force_high": found.bolt_force_high[at],
     }
     rows = []
     for i, name in enumerate(assessment.joint.pattern.names):
         row: dict[str, Any] = {"bolt": name}
         row |= {key: system.out(float(values[i]), "force") for key, values in forces.items()}
         if found.yield_use is not None:
-            row["yield_use"] = float(found.yield_use[state, i])
+            row["yield_use"] = float(found.yield_use[at][i])
         if found.bearing_pressure is not None:
-            row["bearing_pressure_high"] = system.out(float(found.bearing_pressure[state, i]), "pressure")
-        _put(row, separation_factor=float(found.separation_factor[state, i]))
-        row["open"] = bool(found.open[state, i])
-        row["shear"] = system.out(float(slipping.shear[state, i]), "force")
+            row["bearing_pressure_high"] = system.out(float(found.bearing_pressure[at][i]), "pressure")
+        _put(row, separation_factor=float(found.separation_factor[at][i]))
+        row["open"] = bool(found.open[at][i])
+        row["shear"] = system.out(float(slipping.shear[at][i]), "force")
         rows.append(row)
     return rows
 
 
-def _gross_slip(assessment: Assessment, end: End) -> dict[str, Any]:
+def _gross_slip(assessment: Assessment, end: End, system: System) -> dict[str, Any]:
     """The three factors of an end, each with the clamp held and with all loads growing."""
     checks = {check.check: check for check in end.checks}
     found: dict[str, Any] = {}
@@ -186,5 +193,5 @@ def _gross_slip(assessment: Assessment, end: End) -> dict[str, Any]:
         found[name] = _put({}, safety=check.safety, load_factor=check.load_factor, bolt=check.bolt)
     centre = assessment.slip.group.centre[end.group_state] + assessment.joint.pattern.centroid
     if np.isfinite(centre).all():
-        found["group"]["centre"] = [float(x) for x in centre]
+        found["group"]["centre"] = [system.out(float(x), "length") for x in centre]
     return found

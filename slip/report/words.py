@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import math
+from collections.abc import Sequence
 
 CAUTION = (
     "an aid to a qualified engineer. Back friction and preload by test or record; "
     "local codes, tests and licensed practice decide."
 )
+NOT_ASSESSED = "contact stiffness, cycling"
 CHECKS = {
     "gross_slip.per_bolt": "per bolt",
     "gross_slip.group": "group",
@@ -24,9 +26,48 @@ def check_name(check: str) -> str:
 
 
 def plain(text: str, width: int = 60) -> str:
-    """Text on one line without control or direction characters, cut to a width."""
-    shown = " ".join("".join(c if c.isprintable() else " " for c in text).split())
-    return shown if len(shown) <= width else shown[: width - 3] + "..."
+    """Text on one line without control or direction characters, cut to a width in columns."""
+    return cut(" ".join("".join(c if c.isprintable() else " " for c in text).split()), width)
+
+
+def cut(line: str, width: int) -> str:
+    """A line of at most `width` columns; what had to go is marked by dots."""
+    if columns(line) <= width:
+        return line
+    kept = ""
+    for c in line:
+        if columns(kept + c) > width - 3:
+            break
+        kept += c
+    return kept + "..."
+
+
+def columns(text: str) -> int:
+    """Columns that a text takes at a terminal: wide characters take two, combining ones none."""
+    if text.isascii():
+        return len(text)
+    from unicodedata import combining, east_asian_width  # only such a text pays for it
+
+    return sum(0 if combining(c) else 2 if east_asian_width(c) in "WF" else 1 for c in text)
+
+
+def wrapped(text: str, width: int, first: str = "", later: str = "  ") -> list[str]:
+    """Lines of at most `width` columns, broken at spaces; a word that is longer than a line is cut."""
+    lines, line = list[str](), first
+    for word in text.split():
+        blank = " " if line.strip() else ""
+        if line.strip() and columns(line + blank + word) > width:
+            lines.append(line)
+            line, blank = later, ""
+        line = cut(line + blank + word, width)
+    return [*lines, line] if line.strip() else lines
+
+
+def at_most(lines: Sequence[str], most: int, width: int) -> Sequence[str]:
+    """The lines, or the first of them with dots at the end of the last."""
+    if len(lines) <= most:
+        return lines
+    return [*lines[: most - 1], cut(f"{lines[most - 1]} ....", width).rstrip(".").rstrip() + " ..."]
 
 
 def factor(value: float | None, limit: float | None = None) -> str:

@@ -1,0 +1,52 @@
+"""An explanation for a person at a terminal: every number as a block, then what was assumed, the warnings and the citations."""
+
+from __future__ import annotations
+
+import textwrap
+
+from slip.assess import Assessment
+from slip.base.formulas import citation
+from slip.report.equations import Explanation
+from slip.report.terminal import WIDTH, end_of, verdict_lines
+from slip.report.words import plain, wrapped
+
+
+def explain_text(explanation: Explanation, assessment: Assessment) -> str:
+    """The lines of an explanation as blocks, each with formula, numbers put in, result, source key and basis; citations last."""
+    place = ", ".join([plain(explanation.case), *end_of(assessment, explanation.case, explanation.end)])
+    lines = [f"Every number of {place}, bolt {plain(explanation.bolt)}, in N, mm, MPa", *verdict_lines(assessment)]
+    system = assessment.joint.system
+    if system.name != "N mm":
+        lines.append(f"The file is in {system.name}: 1 lbf = 4.4482216 N, 1 in = 25.4 mm, 1 psi = 0.0068947573 MPa.")
+    group = ""
+    for line in explanation.lines:
+        if line.group != group:
+            group = line.group
+            lines += ["", plain(group.upper(), WIDTH), ""]
+        lines += wrapped(f"{plain(line.name, 120)} [{plain(line.source, 60)}; {line.basis}]", WIDTH)
+        if line.formula != "value":
+            lines += _formula(f"{line.symbol} = {line.formula}")
+            lines += _formula("= " + line.put_in)
+            lines.append(f"    = {line.result:.8g} {line.unit}".rstrip())
+        else:
+            lines.append(f"    {line.symbol} = {line.result:.8g} {line.unit}".rstrip())
+        if line.valid:
+            lines.append(f"    valid for: {line.valid}")
+    for title, notes in (("ASSUMED", assessment.assumptions), ("WARNINGS", assessment.warnings)):
+        if notes:
+            lines += ["", title, ""]
+            for note in notes:
+                key = f" [{note.key}]" if note.key else ""
+                lines += wrapped(f"{plain(note.text, 400)}{key}", WIDTH, "", "    ")
+    lines += ["", "SOURCES", ""]
+    for key in dict.fromkeys(key for line in explanation.lines for key in line.source.split(";")):
+        if said := citation(key):
+            lines += wrapped(f"{key}: {said}", WIDTH, "", "    ")
+    return "\n".join(lines) + "\n"
+
+
+def _formula(text: str) -> list[str]:
+    """A formula in lines broken at spaces; nothing of it may be cut."""
+    return textwrap.wrap(
+        text, WIDTH, initial_indent="    ", subsequent_indent="      ", break_long_words=False, break_on_hyphens=False
+    )
