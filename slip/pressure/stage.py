@@ -1,4 +1,4 @@
-"""The pressure stage: points of the face that carry the clamp of a single bolt, where its torque needs them."""
+"""The pressure stage: how the clamp of a bolt presses on the sliding face, where torque or partial slip needs it."""
 
 from __future__ import annotations
 
@@ -9,54 +9,64 @@ import numpy as np
 from slip.base.errors import InputError, Problems
 from slip.base.notes import Note
 from slip.joint.joint import Joint
-from slip.pressure.annulus import friction_radius
-from slip.pressure.spread import contact_radius, in_range, ring_forces
+from slip.joint.plates import Plate
+from slip.pressure.patch import Patch, from_profile, thin_ring
+from slip.pressure.receding import Body, contact
 
-Array = np.ndarray
-RINGS, AROUND = 12, 72  # points of a patch in radius and around; 24 x 144 changes the limit load by less than 1e-3
-
-
-@dataclass(frozen=True, eq=False)
-class Patch:
-    """Points (m, 2) [mm] from the bolt's axis and their shares (m,) of the clamp; friction radius [mm] and where it comes from."""
-
-    points: Array
-    shares: Array
-    friction_radius: float
-    basis: str
+RINGS, AROUND = 12, 72  # of a single bolt under torque; 24 x 144 changes the limit load by less than 1e-3
+FEW_RINGS, FEW_AROUND = 6, 16  # of each bolt of a pattern, where partial slip sums over many points
 
 
 @dataclass(frozen=True)
 class Pressure:
-    """What the pressure stage found: the patch of a single bolt, None where points or radius are not known or not needed."""
+    """What the pressure stage found. patch: of one bolt by the contact of its plates, None where nothing needs it or the file does not
+    describe it; torque_patch: what a torque on a single bolt is held by, None where there is none; basis: of the torque patch."""
 
     patch: Patch | None
+    torque_patch: Patch | None
+    basis: str
     assumptions: tuple[Note, ...]
 
 
 def pressure(joint: Joint, turning: bool) -> Pressure:
-    """The pressure stage. Only a single bolt under a torque (`turning`) needs a patch; several bolts act as points.
+    """The pressure stage; `turning` says whether any load has a moment about the normal.
 
-    Raises Problems when the patch is needed and neither hole nor thread tells its size.
+    Raises Problems when a single bolt under torque tells neither hole nor thread.
     """
-    bolt, plates = joint.bolt, joint.plates
-    if joint.pattern.count > 1 or not turning:
-        return Pressure(None, ())
-    if bolt.hole_diameter is None:
+    single = joint.pattern.count == 1
+    known = joint.interface.roughness is not None or joint.interface.tangential_stiffness is not None
+    profile = _profile(joint) if known or (single and turning) else None
+    patch = (
+        None if profile is None else from_profile(*profile, *((RINGS, AROUND) if single else (FEW_RINGS, FEW_AROUND)))
+    )
+    if not (single and turning):
+        return Pressure(patch, None, "", ())
+    if patch is not None:
+        return Pressure(patch, patch, "derived", ())
+    if joint.bolt.hole_diameter is None:
         expected = "hole_diameter, the radius at which a single bolt holds a torque"
         raise Problems([InputError("missing-key", "bolt.hole_diameter", "nothing", expected, "add it", joint.file)])
-    hole, bearing = bolt.hole_diameter / 2, (bolt.bearing_diameter or 0.0) / 2
-    equal = len(plates) == 2 and not bolt.tapped and bolt.washers == (0.0, 0.0)
-    equal = equal and plates[0].thickness == plates[1].thickness and plates[0].material == plates[1].material
-    if equal and bearing > 0 and in_range(plates[0].thickness, bearing, hole):
-        radii, shares = ring_forces(hole, contact_radius(plates[0].thickness, bearing), RINGS)
-        return Pressure(_patch(radii, shares, "derived"), ())
     note = Note("friction-radius-hole", "torque on one bolt is held at the hole radius", "plate")
-    return Pressure(_patch(np.array([hole]), np.array([1.0]), "practice"), (note,))
+    return Pressure(None, thin_ring(joint.bolt.hole_diameter / 2, AROUND), "practice", (note,))
 
 
-def _patch(radii: Array, shares: Array, basis: str) -> Patch:
-    """Rings of equal points around the bolt."""
-    angles = 2 * np.pi * np.arange(AROUND) / AROUND
-    points = radii[:, None, None] * np.stack([np.cos(angles), np.sin(angles)], axis=-1)
-    return Patch(points.reshape(-1, 2), np.repeat(shares / AROUND, AROUND), friction_radius(radii, shares), basis)
+def _profile(joint: Joint) -> tuple[np.ndarray, np.ndarray] | None:
+    """Pressure along the radius between the first plate and the rest of the stack, or None.
+
+    Not for tapped joints, whose thread pulls from inside the lower plate; washers are left out, which narrows the contact.
+    """
+    bolt, plates = joint.bolt, joint.plates
+    if len(plates) < 2 or bolt.tapped or bolt.hole_diameter is None or bolt.bearing_diameter is None:
+        return None
+    if any(plate.material is None for plate in plates):
+        return None
+    found = contact(_body(plates[:1]), _body(plates[1:]), bolt.hole_diameter / 2, bolt.bearing_diameter / 2)
+    return found.radii, found.pressure
+
+
+def _body(plates: tuple[Plate, ...]) -> Body:
+    """Plates below the face as one: thicknesses added, moduli by their compliance in series."""
+    thickness = sum(p.thickness for p in plates)
+    soft = sum(p.thickness / p.material.youngs_modulus for p in plates if p.material is not None)
+    ratio = sum(p.thickness * p.material.poissons_ratio for p in plates if p.material is not None) / thickness
+    return Body(thickness, thickness / soft, ratio)

@@ -1,0 +1,76 @@
+"""The pressure patch of one bolt: how its clamp presses on the face, ring by ring, for a unit of force."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from slip.pressure.annulus import friction_radius
+
+Array = np.ndarray
+
+
+@dataclass(frozen=True, eq=False)
+class Patch:
+    """Points (m, 2) [mm] from the bolt's axis, ring after ring, with their shares (m,) of the clamp and areas (m,) [mm^2].
+
+    radii and profile (k,): the pressure [MPa per N] along the radius, linear between, zero outside. contact_radius [mm]: where it ends.
+    friction_radius [mm]: at which the whole clamp holds a torque about the axis.
+    """
+
+    points: Array
+    shares: Array
+    areas: Array
+    radii: Array
+    profile: Array
+    contact_radius: float
+    friction_radius: float
+
+    @property
+    def density(self) -> Array:
+        """Pressure of the points for a unit of clamp, (m,) [1/mm^2]."""
+        return self.shares / self.areas
+
+    def pressure(self, distance: Array) -> Array:
+        """Pressure for a unit of clamp [1/mm^2] at a distance [mm] from the axis, any shape."""
+        found: Array = np.interp(distance, self.radii, self.profile, left=0.0, right=0.0)
+        return found
+
+
+def from_profile(radii: Array, profile: Array, rings: int, around: int) -> Patch:
+    """The patch of a pressure that is linear between `radii` [mm], `profile` up to any factor, both (k,).
+
+    Rings lie at Gauss points of the radius, each of `around` equal points; the shares add up to 1.
+    """
+    inner, outer = float(radii[0]), float(radii[-1])
+    places, weights = np.polynomial.legendre.leggauss(rings)
+    r = inner + (places + 1) / 2 * (outer - inner)
+    areas = 2 * np.pi * r * weights / 2 * (outer - inner)
+    forces = np.interp(r, radii, profile) * areas
+    total = forces.sum()
+    return Patch(
+        _around(r, around),
+        np.repeat(forces / total / around, around),
+        np.repeat(areas / around, around),
+        radii,
+        profile / total,
+        outer,
+        friction_radius(r, forces),
+    )
+
+
+def thin_ring(radius: float, around: int) -> Patch:
+    """All of the clamp on one circle: the patch of a torque where nothing better is known. Its area is that of a ring 1 um wide."""
+    width = 1e-3
+    radii = radius + width * np.array([-0.5, 0.5])
+    area = 2 * np.pi * radius * width
+    shares, areas = np.full(around, 1 / around), np.full(around, area / around)
+    return Patch(_around(np.array([radius]), around), shares, areas, radii, np.full(2, 1 / area), radius, radius)
+
+
+def _around(radii: Array, around: int) -> Array:
+    """Points on circles, (rings * around, 2)."""
+    angles = 2 * np.pi * np.arange(around) / around
+    circle = np.stack([np.cos(angles), np.sin(angles)], axis=-1)
+    return (radii[:, None, None] * circle).reshape(-1, 2)
