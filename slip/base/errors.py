@@ -32,12 +32,12 @@ class InputError(SlipError):
     line: int = 0
 
     def __str__(self) -> str:
-        place = self.file
-        if self.line:
-            place += f", line {self.line}"
-        parts = [p for p in (place, self.key) if p]
-        sentence = ": ".join([*parts, f"found {self.found}, expected {self.expected}"])
-        return f"{sentence}; {self.remedy.rstrip('.')}" + ("" if self.remedy.endswith("?") else ".")
+        """One sentence on one line: control and direction characters of the input do not reach a terminal."""
+        place = f"{self.file}, line {self.line}" if self.line else self.file
+        parts = [part for part in (place, self.key) if part]
+        sentence = ": ".join([*parts, f"found {self.found}, expected {self.expected}; {self.remedy.rstrip('.')}"])
+        end = "" if self.remedy.endswith("?") else "."
+        return "".join(c if c.isprintable() else "?" for c in sentence) + end
 
     def as_dict(self) -> dict[str, object]:
         """The error as the contract's JSON object."""
@@ -53,10 +53,11 @@ class InputError(SlipError):
 
 
 class Problems(SlipError):
-    """Several input errors that come together; `errors` holds them in file order."""
+    """Several input errors that come together; `errors` holds them file by file, as first met, and there by line."""
 
     code = "problems"
 
     def __init__(self, errors: list[InputError]) -> None:
-        self.errors = sorted(errors, key=lambda e: e.line)
+        files = list(dict.fromkeys(e.file for e in errors))
+        self.errors = sorted(errors, key=lambda e: (files.index(e.file), e.line))
         super().__init__("\n".join(str(e) for e in self.errors))

@@ -71,28 +71,35 @@ UNITS: dict[str, tuple[float, Dimension]] = {
     "h": (3600.0, (0, 0, 0, 1)),
     "%": (0.01, NONE),
 }
-ALIASES = {"µm": "um", "μm": "um", "inch": "in", '"': "in", "°F": "degF", "N·m": "N m", "Nm": "N m", "Nmm": "N mm"}
-# Units that are refused, with the words to write instead.
+ALIASES = {"µm": "um", "μm": "um", "inch": "in", '"': "in", "°F": "degF", "Nm": "N m", "kNm": "kN m", "Nmm": "N mm"}
+ONE_WAY = "a unit that can be read in one way"
+POUNDS = (ONE_WAY, "lb is a mass or a force; write lbf for a force")
+KIPS = (ONE_WAY, "kip is a mass or a force; write kipf for a force")
+RISE = ("a temperature rise in K or degF", 'write the rise since assembly, for instance "40 K" or "72 degF"')
+# Units that are refused: what is expected, and the words to write instead.
 AMBIGUOUS = {
-    "lb": "lb is a mass or a force; write lbf for a force",
-    "lbs": "lb is a mass or a force; write lbf for a force",
-    "kip": "kip is read as a mass or a force; write kipf for a force",
-    "kips": "kip is read as a mass or a force; write kipf for a force",
-    "kgf": "write the force in N or lbf",
-    "degC": "give the rise since assembly in K",
-    "°C": "give the rise since assembly in K",
-    "C": "give the rise since assembly in K",
-    "F": "give the rise since assembly in K or degF",
+    "lb": POUNDS,
+    "lbs": POUNDS,
+    "kip": KIPS,
+    "kips": KIPS,
+    "kgf": ("a force in N or lbf", "write the force in N or lbf; 1 kgf is 9.80665 N"),
+    "degC": RISE,
+    "°C": RISE,
+    "C": RISE,
+    "F": RISE,
 }
-QUANTITY = re.compile(r"\s*([-+]?(?:\d+\.?\d*|\.\d+)(?:[eE][-+]?\d+)?)\s*(.*?)\s*$")
-FACTOR = re.compile(r"(.*?)(?:\^?(-?\d+)|([²³]))?$")
+QUANTITY = re.compile(r"\s*([-+]?(?:[0-9]+\.?[0-9]*|\.[0-9]+)(?:[eE][-+]?[0-9]+)?)\s*(.*?)\s*$")
+FACTOR = re.compile(r"(.*?)(?:\^?(-?[0-9])|([²³]))?$")
+SECOND_NUMBER = re.compile(r"(?!1/[^0-9])[,.0-9]|/[0-9]")  # what cannot begin a unit, which 1/K can
+PRODUCT = re.compile(r"[ *·]+|(?<=[A-Za-z])-(?=[A-Za-z])")
 
 
 class UnitError(ValueError):
-    """A text that is not a quantity; `expected` and `remedy` complete the sentence of an InputError."""
+    """A text that is not a quantity; `code`, `expected` and `remedy` are those of an InputError."""
 
-    def __init__(self, expected: str, remedy: str) -> None:
-        super().__init__(f"{expected}; {remedy}")
+    def __init__(self, code: str, expected: str, remedy: str) -> None:
+        super().__init__(f"expected {expected}; {remedy}")
+        self.code = code
         self.expected = expected
         self.remedy = remedy
 
@@ -126,6 +133,8 @@ class System:
             "compliance": f"{self.length}/{self.force}",
             "force per length": f"{self.force}/{self.length}",
             "expansion": f"1/{self.temperature}",
+            "density": f"{self.force} s^2/{self.length}^4",
+            "wear per energy": f"{self.length}^2/{self.force}",
             "time": "s",
         }
         return special.get(kind, "1")
@@ -154,7 +163,7 @@ def parse_unit(text: str) -> tuple[float, Dimension]:
     total, powers = 1.0, [0, 0, 0, 0]
     for position, part in enumerate(text.split("/")):
         sign = 1 if position == 0 else -1
-        for word in re.split(r"[ *·]+", part.strip("() ")):
+        for word in PRODUCT.split(part.strip("() ")):
             if not word or (word == "1" and position == 0):
                 continue
             match = FACTOR.match(word)
@@ -163,23 +172,24 @@ def parse_unit(text: str) -> tuple[float, Dimension]:
             name = ALIASES.get(name, name)
             power = sign * (int(digits) if digits else {"²": 2, "³": 3}.get(raised or "", 1))
             if name in AMBIGUOUS:
-                raise UnitError("a unit that can be read in one way", AMBIGUOUS[name])
+                raise UnitError("unit-ambiguous", *AMBIGUOUS[name])
             if name not in UNITS:
-                raise UnitError(
-                    "a known unit",
-                    "units are written like N, kN, lbf, mm, in, MPa, psi, N m, lbf in, N/mm^3, K, degF, %",
-                )
+                known = "N, kN, lbf, mm, in, MPa, psi, N m, lbf in, N/mm^3, K, degF, %"
+                raise UnitError("unit-unknown", "a known unit", f"write units like {known}")
             factor, dimension = UNITS[name]
             total *= factor**power
             powers = [p + power * d for p, d in zip(powers, dimension, strict=True)]
     return total, (powers[0], powers[1], powers[2], powers[3])
 
 
-def split(text: str) -> tuple[float, str]:
-    """Number and unit text of a quantity such as "12 kN"; UnitError when it does not begin with a number."""
+def split(text: str, kind: str = "force") -> tuple[float, str]:
+    """Number and unit text of a quantity such as "12 kN"; UnitError, with an example of the kind, when it has no such form."""
     match = QUANTITY.match(text)
     if match is None:
-        raise UnitError("a number with a unit", 'write for instance "12 kN"')
+        raise UnitError("not-a-quantity", a(kind), f"write for instance {example(kind)}")
+    if SECOND_NUMBER.match(match.group(2)):
+        remedy = "write it with a point for decimals, without spaces, commas or fractions"
+        raise UnitError("not-a-quantity", "one number before the unit", remedy)
     return float(match.group(1)), match.group(2)
 
 
@@ -195,11 +205,13 @@ def example(kind: str) -> str:
         "stiffness per area": '"12000 N/mm^3"',
         "stiffness": '"2e5 N/mm"',
         "compliance": '"2e-6 mm/N"',
+        "force per length": '"150 N/mm"',
         "expansion": '"11.5e-6 1/K"',
         "density": '"7850 kg/m^3"',
         "wear per energy": '"2e-5 mm^3/J"',
         "share": '"5 %" or 0.05',
         "time": '"2 s"',
+        "friction": "0.15",
     }.get(kind, "1.5")
 
 
@@ -208,11 +220,16 @@ def parse(text: str, kind: str) -> float:
 
     Raises UnitError when the number or the unit cannot be read, or when the unit is of another kind.
     """
-    value, unit = split(text)
+    value, unit = split(text, kind)
     wanted = KINDS[kind]
     if not unit and wanted != NONE:
-        raise UnitError(f"a {kind} with a unit", f"write for instance {example(kind)}")
+        raise UnitError("unit-missing", f"{a(kind)} with a unit", f"write for instance {example(kind)}")
     factor, dimension = parse_unit(unit)
     if dimension != wanted:
-        raise UnitError(f"a {kind}", f"write for instance {example(kind)}")
+        raise UnitError("unit-wrong", a(kind), f"write for instance {example(kind)}")
     return value * factor
+
+
+def a(kind: str) -> str:
+    """The kind with its article."""
+    return f"an {kind}" if kind[0] in "aeiou" else f"a {kind}"

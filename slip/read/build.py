@@ -2,21 +2,32 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+from functools import partial
 from pathlib import Path
 from typing import TypeVar
 
-from slip.base.notes import Note
 from slip.joint.joint import Joint, Required, Standard
 from slip.joint.surface import Interface
 from slip.read import assembly, hardware, loading
 from slip.read.document import Document, load, parse
 from slip.read.forms import Friction
+from slip.read.pattern import pattern
 from slip.read.reader import Reader
-from slip.read.schema import KEYS, TABLES
+from slip.read.schema import KEYS
 from slip.read.sections import Section, many, one
 
 T = TypeVar("T")
+# What is taken for a standard when its entry is silent, and how it is said.
+STANDARD_DEFAULTS = {
+    "EN 1993-1-8": {"hole": "normal hole"},
+    "AISC 360": {"edition": "edition 2016", "hole": "normal hole", "filler_factor": "no fillers"},
+    "VDI 2230": {},
+    "NASA-STD-5020": {"surface": "surface not known, friction at most 0.1", "fitting_factor": "fitting factor 1", "c_min": "c_min 1"},
+}
 CONTACT = "pressed contacts are not assessed yet"
+# Tables of keys that are checked, not used yet.
+LATER = ("finite_elements", "fretting", "loosening", "scatter", "table")
 
 
 def read(path: str | Path) -> Joint:
@@ -26,7 +37,7 @@ def read(path: str | Path) -> Joint:
 
 def read_text(text: str, file: str = "joint") -> Joint:
     """The joint of a TOML text, for scripts and tests; files that it names are looked for in the working directory."""
-    return build(parse(text.encode(), file, Path()))
+    return build(parse(text.encode("utf-8", "surrogatepass"), file, Path()))
 
 
 def build(document: Document) -> Joint:
@@ -34,42 +45,54 @@ def build(document: Document) -> Joint:
     r = Reader(document)
     top = Section(r, (), "", document.tree)
     r.attempt(lambda: top.need("format", "the version of the file format", "add format = 1 at the top"))
-    tables = {name: one(r, name) for name in TABLES if name and not name.endswith("]")}
-    if "contact" in document.tree or "body" in document.tree:
-        r.fail(("contact",), "contact-not-yet", "a pressed contact", "a joint with bolts", CONTACT)
-        r.finish()
-    bolts = r.attempt(lambda: hardware.pattern(r, tables["pattern"]))
-    pattern = bolts.pattern if bolts else None
-    bolt = r.attempt(lambda: hardware.bolt(r, tables["bolt"]))
-    plates = r.attempt(lambda: hardware.plates(r, pattern, bolt))
-    tightening = r.attempt(lambda: assembly.tightening(r, tables["tightening"], bolts, bolt))
-    losses = r.attempt(lambda: assembly.losses(r, tables["losses"], plates, bolt))
-    interface = r.attempt(lambda: _interface(r, tables["interface"]))
-    required = r.attempt(lambda: _required(r, tables["required"]))
-    cases = r.attempt(lambda: loading.cases(r, pattern))
-    axial = r.attempt(lambda: loading.axial(r, tables["axial"], plates, bolt, cases))
+    for name in LATER:
+        r.attempt(partial(one, r, name))
+    _refuse_contact(r)
+    bolts = r.attempt(lambda: pattern(r, one(r, "pattern")))
+    layout = bolts.pattern if bolts else None
+    bolt = r.attempt(lambda: hardware.bolt(r, one(r, "bolt")))
+    plates = r.attempt(lambda: hardware.plates(r, layout, bolt))
+    tightening = r.attempt(lambda: assembly.tightening(r, one(r, "tightening"), bolts, bolt))
+    losses = r.attempt(lambda: assembly.losses(r, one(r, "losses"), plates, bolt))
+    interface = r.attempt(lambda: _interface(r, one(r, "interface")))
+    required = r.attempt(lambda: _required(r, one(r, "required")))
+    cases = r.attempt(lambda: loading.cases(r, layout))
+    axial = r.attempt(lambda: loading.axial(r, one(r, "axial"), plates, bolt, cases))
     standards = r.attempt(lambda: _standards(r))
     r.finish()
+    assert tightening is not None
+    hardware.assume_springs(r, _there(plates))
     _say_unused(r)
     return Joint(
         title=top.get("title", ""),
         system=r.system,
         bolt=_there(bolt),
-        tightening=_there(tightening),
+        tightening=tightening,
         losses=_there(losses),
         plates=_there(plates),
         interface=_there(interface),
-        pattern=_there(pattern),
+        pattern=_there(layout),
         axial=_there(axial),
         required=_there(required),
         standards=_there(standards),
         cases=_there(cases),
-        loosening_limit=bool(tables["loosening"].get("limit", False)),
+        loosening_limit=bool(document.tree.get("loosening", {}).get("limit", False)),
         assumptions=tuple(r.assumptions),
         warnings=tuple(r.warnings),
         digest="+".join(part for part in (document.digest, bolts.digest if bolts else "") if part),
         file=document.file,
     )
+
+
+def _refuse_contact(r: Reader) -> None:
+    """A pressed contact has neither bolts nor plates: its own keys are checked, and nothing else is asked for."""
+    given = [name for name in ("contact", "body") if name in r.document.tree]
+    if not given:
+        return
+    r.attempt(lambda: one(r, "contact"))
+    r.attempt(lambda: many(r, "body[]"))
+    r.fail((given[0],), "contact-not-yet", "a pressed contact", "a joint with bolts", CONTACT)
+    r.finish()
 
 
 def _there(part: T | None) -> T:
@@ -79,13 +102,12 @@ def _there(part: T | None) -> T:
 
 
 def _interface(r: Reader, s: Section) -> Interface:
-    write = 'add friction = [lowest, highest], or { pair = "steel / steel" }'
-    friction: Friction = s.need("friction", "of the sliding face; it is never assumed", write)
+    """[interface]; friction is never assumed."""
+    write = 'add friction = [lowest, highest], or friction = { pair = "steel / steel" }'
+    friction: Friction = s.need("friction", "the friction of the sliding face, which is never assumed", write)
     if s.has("pressure"):
-        expected = "bolts that clamp"
-        raise s.stop_value(
-            "pressure", "face-not-yet", expected, "a face of known pressure without bolts is not assessed yet"
-        )
+        remedy = "a face of known pressure without bolts is not assessed yet"
+        raise s.stop_value("pressure", "face-not-yet", "bolts that clamp", remedy)
     if not s.has("parallel_faces"):
         r.assume("one-face", "one sliding face carries the load", "interface.parallel_faces")
     return Interface(
@@ -103,32 +125,36 @@ def _interface(r: Reader, s: Section) -> Interface:
 
 
 def _required(r: Reader, s: Section) -> Required:
+    """[required]; the factors of practice where the file is silent."""
     values = {}
     for name, default in (("static", 1.2), ("alternating", 1.8)):
         if not s.has(name):
-            r.assume(f"required-{name}", f"required factor {default} for {name} cases (practice)", f"required.{name}")
+            r.assume("required-factor", f"required factor {default} for {name} cases (practice)", f"required.{name}")
         values[name] = s.get(name, default)
     decides, reason = s.get("decides", "per bolt"), s.get("decides_reason", "")
     if decides == "group" and not reason.strip():
-        raise s.stop(
-            "decides_reason", "missing-key", "nothing", "a reason why the group may decide", 'add decides_reason = ".."'
-        )
-    return Required(
-        values["static"], values["alternating"], decides, reason, s.get("grows", "all loads"), s.get("true_slip")
-    )
+        expected, write = "the reason why the group may decide", 'add decides_reason = ".." in your words'
+        raise s.stop("decides_reason", "missing-key", "nothing", expected, write)
+    grows = s.get("grows", "all loads")
+    return Required(values["static"], values["alternating"], decides, reason, grows, s.get("true_slip"))
 
 
 def _standards(r: Reader) -> tuple[Standard, ...]:
-    standards = []
-    for s in many(r, "standard", "standard[]"):
-        name = s.need("name", "of the standard", 'add name = "EN 1993-1-8"')
-        options = {key: s.get(key) for key in s.raw if key not in ("name", "to_standard_level")}
-        standards.append(Standard(name, "", options, s.get("to_standard_level")))
+    """All [[standard]]; two entries of one name get a label each."""
+    standards = r.every(partial(_standard, s) for s in many(r, "standard[]"))
     names = [s.name for s in standards]
     return tuple(
-        Standard(s.name, f"{s.name} ({i + 1})" if names.count(s.name) > 1 else s.name, s.options, s.to_standard_level)
-        for i, s in enumerate(standards)
+        replace(s, label=f"{s.name} ({i + 1})" if names.count(s.name) > 1 else s.name) for i, s in enumerate(standards)
     )
+
+
+def _standard(s: Section) -> Standard:
+    name = s.need("name", "the name of the standard", 'add name = "EN 1993-1-8"')
+    options = {key: s.get(key) for key in s.raw if key not in ("name", "to_standard_level")}
+    for key, said in STANDARD_DEFAULTS[name].items():
+        if key not in options:
+            s.reader.assume("standard-default", f"{name}: {said}", f"standard.{key}")
+    return Standard(name, name, options, s.get("to_standard_level"))
 
 
 def _say_unused(r: Reader) -> None:
@@ -142,4 +168,4 @@ def _say_unused(r: Reader) -> None:
         if key.later and any(isinstance(entry, dict) and key.name in entry for entry in entries):
             unused.append(f"{table}.{key.name}")
     if unused:
-        r.warnings.append(Note("not-used-yet", f"read and checked, not used yet: {', '.join(unused)}", unused[0]))
+        r.warn("not-used-yet", f"read and checked, not used yet: {', '.join(unused)}", unused[0])

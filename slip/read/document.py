@@ -2,33 +2,41 @@
 
 from __future__ import annotations
 
+import codecs
 import hashlib
 import re
 import tomllib
 from dataclasses import dataclass
+from functools import cached_property
 from pathlib import Path
 from typing import Any
 
 from slip.base.errors import InputError, Problems
+from slip.read.lines import Path_, key_lines
 
 LARGEST = 20_000_000  # bytes; a joint file is a few kilobytes, larger inputs belong into a table
-Path_ = tuple[str | int, ...]
-HEADER = re.compile(r"^\s*(\[\[?)\s*([^\[\]]+?)\s*\]\]?\s*(?:#.*)?$")
-ASSIGNMENT = re.compile(r"""^\s*((?:[\w-]+|"[^"]*"|'[^']*')(?:\s*\.\s*(?:[\w-]+|"[^"]*"|'[^']*'))*)\s*=""")
 
 
 @dataclass(frozen=True)
 class Document:
-    """A parsed file: shown name, folder (for files it names), the TOML tree, the line of each key path, the digest of its bytes."""
+    """A parsed file: shown name, folder (for files it names), text, the TOML tree, the digest of its bytes."""
 
     file: str
     folder: Path
+    text: str
     tree: dict[str, Any]
-    lines: dict[Path_, int]
     digest: str
 
+    @cached_property
+    def lines(self) -> dict[Path_, int]:
+        """Line of each key path; only a fault asks for it."""
+        try:
+            return key_lines(self.text)
+        except RecursionError:  # brackets in brackets to the very limit
+            return {}
+
     def line(self, path: Path_) -> int:
-        """Line of the key, or of the nearest enclosing one that stands on a line of its own; 0 when unknown."""
+        """Line of the key, or of the nearest enclosing one; 0 when unknown."""
         while path:
             if path in self.lines:
                 return self.lines[path]
@@ -36,7 +44,8 @@ class Document:
         return 0
 
 
-def _refuse(code: str, file: str, found: str, expected: str, remedy: str, line: int = 0) -> Problems:
+def refuse(code: str, file: str, found: str, expected: str, remedy: str, line: int = 0) -> Problems:
+    """A file that cannot be read at all."""
     return Problems([InputError(code, "", found, expected, remedy, file, line)])
 
 
@@ -45,22 +54,20 @@ def read_bytes(path: Path) -> bytes:
     file = str(path)
     try:
         if path.is_dir():
-            raise _refuse("file-directory", file, "a directory", "a file", "name the file inside it")
-        if path.stat().st_size > LARGEST:
-            size = f"{path.stat().st_size / 1e6:.0f} MB"
-            raise _refuse(
-                "file-huge", file, size, f"at most {LARGEST // 1_000_000} MB", "give many load cases as a table"
-            )
-        data = path.read_bytes()
+            raise refuse("file-directory", file, "a directory", "a file", "name the file inside it")
+        with path.open("rb") as stream:
+            data = stream.read(LARGEST + 1)
     except FileNotFoundError:
-        raise _refuse("file-missing", file, "no such file", "an existing file", "check the path") from None
+        raise refuse("file-missing", file, "no such file", "an existing file", "check the path") from None
     except (OSError, ValueError) as error:
-        reason = getattr(error, "strerror", None) or str(error)
-        raise _refuse(
-            "file-unreadable", file, reason.lower(), "a readable file", "check path and permissions"
-        ) from None
-    if not data.strip():
-        raise _refuse("file-empty", file, "an empty file", "a joint file", "slip new PATH writes one to start from")
+        reason = str(getattr(error, "strerror", None) or error).lower()
+        raise refuse("file-unreadable", file, reason, "a readable file", "check path and permissions") from None
+    if len(data) > LARGEST:
+        most = f"at most {LARGEST // 1_000_000} MB"
+        raise refuse("file-huge", file, "a larger file", most, "give many load cases as a table")
+    if not data.removeprefix(codecs.BOM_UTF8).strip():
+        remedy = "slip new PATH writes a joint file to start from"
+        raise refuse("file-empty", file, "an empty file", "a file with text", remedy)
     return data
 
 
@@ -71,46 +78,36 @@ def decode(data: bytes, file: str) -> str:
     except UnicodeDecodeError as error:
         line = data.count(b"\n", 0, error.start) + 1
         found = f"a byte that is not UTF-8 (0x{data[error.start]:02x})"
-        raise _refuse("file-not-utf8", file, found, "UTF-8 text", "save the file as UTF-8", line) from None
-
-
-def _lines(text: str) -> dict[Path_, int]:
-    """Line numbers of tables and keys by path. Arrays of tables count from 0; keys inside inline tables have no line of their own."""
-    found: dict[Path_, int] = {}
-    counts: dict[Path_, int] = {}
-    table: Path_ = ()
-    for number, line in enumerate(text.splitlines(), start=1):
-        if header := HEADER.match(line):
-            table = ()
-            names = [name.strip().strip("\"'") for name in header.group(2).split(".")]
-            for position, name in enumerate(names):
-                table = (*table, name)
-                last = position == len(names) - 1
-                if last and header.group(1) == "[[":
-                    counts[table] = counts.get(table, -1) + 1
-                if table in counts:
-                    table = (*table, counts[table])
-            found.setdefault(table, number)
-        elif key := ASSIGNMENT.match(line):
-            names = [name.strip().strip("\"'") for name in key.group(1).split(".")]
-            for length in range(1, len(names) + 1):
-                found.setdefault((*table, *names[:length]), number)
-    return found
+        raise refuse("file-not-utf8", file, found, "UTF-8 text", "save the file as UTF-8", line) from None
 
 
 def parse(data: bytes, file: str, folder: Path) -> Document:
     """A Document from the bytes of a joint file; Problems when they are not UTF-8 or not TOML."""
     text = decode(data, file)
     try:
-        tree = tomllib.loads(text)
-    except (tomllib.TOMLDecodeError, RecursionError) as error:
-        place = re.search(r"\(at line (\d+)", str(error))
-        end = text.count("\n") + 1
-        line = int(place.group(1)) if place else end if "end of document" in str(error) else 0
-        what = re.sub(r"\s*\(at .*\)$", "", str(error)).replace("\n", " ")
-        what = what[:1].lower() + what[1:] or "too many nested brackets"
-        raise _refuse("file-not-toml", file, what, "TOML", 'write key = value, text in "quotes"', line) from None
-    return Document(file, folder, tree, _lines(text), hashlib.sha256(data).hexdigest())
+        return Document(file, folder, text, tomllib.loads(text), hashlib.sha256(data).hexdigest())
+    except RecursionError:
+        remedy = "close each bracket that you open"
+        raise refuse("file-not-toml", file, "too many nested brackets", "TOML", remedy) from None
+    except ValueError as error:  # also raised for a whole number of thousands of digits
+        raise _not_toml(text, file, str(error)) from None
+
+
+def _not_toml(text: str, file: str, said: str) -> Problems:
+    """The line that cannot be read, and why."""
+    place = re.search(r"\(at line (\d+)", said)
+    written = text.rstrip().split("\n")
+    line = int(place.group(1)) if place else len(written) if "end of document" in said else 0
+    reason = " ".join(re.sub(r"\s*\(at .*\)$", "", said.split(";")[0], flags=re.DOTALL).split())
+    found = cut(written[line - 1].strip()) if 0 < line <= len(written) else "a value that cannot be read"
+    expected = f"TOML ({reason[:1].lower()}{reason[1:]})"
+    remedy = 'write key = value, each key once, with text and quantities in quotes as in torque = "200 N m"'
+    return refuse("file-not-toml", file, found, expected, remedy, line)
+
+
+def cut(text: str, width: int = 60) -> str:
+    """A text of the file, short enough for a sentence."""
+    return text if len(text) <= width else text[: width - 3] + "..."
 
 
 def load(path: str | Path) -> Document:

@@ -4,24 +4,37 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from functools import partial
 from typing import Any
 
 from slip.base.tables import number
 from slip.base.units import KINDS, UnitError, parse_unit, split
 from slip.joint.bolt import Thread
 from slip.joint.material import Material
-from slip.joint.plates import Rectangle, Ring
 from slip.joint.surface import Roughness
 from slip.joint.tightening import Rises
 from slip.read import library
-from slip.read.document import Path_
+from slip.read.layout import circle, grid, outline, positions
+from slip.read.lines import Path_
 from slip.read.reader import Reader, Stop, nearest, show
-from slip.read.schema import BY_TABLE, Key
+from slip.read.schema import BY_TABLE, Key, not_negative, positive
+from slip.read.words import choice, flag, names, whole
 
-POSITIVE = {kind: Key("", "", kind, "", least=0.0, above=True) for kind in ("length", "pressure", "force", "number")}
-PLAIN = {kind: Key("", "", kind, "") for kind in ("length", "force", "temperature rise")}
-LOAD = ("shear", "axial", "moment")
-MATERIAL = ("youngs_modulus", "poissons_ratio", "expansion", "yield_strength", "density", "name")
+RISE = Key("", "", "temperature rise", "")
+CONSTANTS = {
+    "youngs_modulus": positive("pressure"),
+    "poissons_ratio": Key("", "poissons_ratio", "number", "", least=0.0, most=0.49),
+    "expansion": Key("", "", "expansion", ""),
+    "yield_strength": positive("pressure"),
+    "density": positive("density"),
+}
+PRESENT = {
+    "per_area": "stiffness per area",
+    "per_node": "stiffness",
+    "elastic_slip": "length",
+    "edge_fraction": "number",
+    "of_normal": "number",
+}
 
 
 @dataclass(frozen=True)
@@ -43,77 +56,50 @@ class PreloadForm:
     nominal: float | None
 
 
+def _looked_up(r: Reader, path: Path_, value: str, code: str, what: str, known: list[str], see: str) -> Stop:
+    """The fault of a word that no table has."""
+    close = nearest(value, known)
+    return r.stop(path, code, show(value), what, f'did you mean "{close}"?' if close else see)
+
+
 def thread(r: Reader, path: Path_, value: Any) -> Thread:
     """A thread designation."""
     text = r.text(path, value)
-    found = library.thread(text)
+    found, known = library.thread(text), library.choices("threads", "designation")
     if found is None:
-        close = nearest(text, library.choices("threads", "designation"))
-        remedy = f"did you mean {close}?" if close else "slip tables threads lists the known ones"
-        raise r.stop(path, "unknown-thread", show(text), 'a thread such as "M16", "M16x1.5", "3/4-10 UNC"', remedy)
+        close = library.thread_near(text) or nearest(text, known)
+        remedy = f'did you mean "{close}"?' if close else "slip tables threads lists the known ones"
+        expected = 'a thread such as "M16", "M16x1.5", "3/4-10 UNC"'
+        raise r.stop(path, "unknown-thread", show(text), expected, remedy)
+    if found.designation not in known:
+        said = f"{found.designation} is not in the table of threads: taken as an ISO metric thread of that pitch"
+        r.warn("thread-not-listed", said, "bolt.thread")
     return found
 
 
 def material(r: Reader, path: Path_, value: Any) -> Material:
     """A material by name, or its constants."""
+    what = "a material of the table, or { youngs_modulus = .., poissons_ratio = .. }"
     if isinstance(value, str):
         found = library.material(value)
         if found is None:
             known = library.choices("materials", "name")
-            close = nearest(value, known)
-            remedy = f"did you mean {close}?" if close else f"known: {', '.join(known)}"
-            raise r.stop(
-                path, "unknown-material", show(value), "a material of the table, or { youngs_modulus =, .. }", remedy
-            )
+            raise _looked_up(r, path, value, "unknown-material", what, known, f"known: {', '.join(known)}")
         return found
-    typed = r.table(path, value, MATERIAL, "a material")
-    for needed in ("youngs_modulus", "poissons_ratio"):
-        if needed not in typed:
-            raise r.stop(path, "missing-key", f"no {needed}", "youngs_modulus and poissons_ratio", f"add {needed}")
-    ratio = r.number((*path, "poissons_ratio"), typed["poissons_ratio"])
-    if not 0 <= ratio < 0.5:
-        raise r.stop(
-            (*path, "poissons_ratio"), "out-of-limits", show(ratio), "a ratio from 0 to below 0.5", "correct the value"
-        )
-
-    def positive(name: str, kind: str) -> float | None:
-        if name not in typed:
-            return None
-        return r.limited((*path, name), typed[name], POSITIVE.get(kind, Key("", name, kind, "", least=0.0, above=True)))
-
-    modulus = positive("youngs_modulus", "pressure")
-    assert modulus is not None
-    expansion = r.quantity((*path, "expansion"), typed["expansion"], "expansion") if "expansion" in typed else None
-    name = r.text((*path, "name"), typed["name"]) if "name" in typed else "given"
+    typed = r.table(path, value, (*CONSTANTS, "name"), what, ("youngs_modulus", "poissons_ratio"))
+    names = [name for name in CONSTANTS if name in typed]
+    values = r.every(partial(r.limited, (*path, name), typed[name], CONSTANTS[name]) for name in names)
+    given = dict(zip(names, values, strict=True))
     return Material(
-        name,
-        modulus,
-        ratio,
-        expansion,
-        positive("yield_strength", "pressure"),
-        positive("density", "density"),
-        "file",
-        "given",
+        name=r.text((*path, "name"), typed["name"]) if "name" in typed else "given",
+        youngs_modulus=given["youngs_modulus"],
+        poissons_ratio=given["poissons_ratio"],
+        expansion=given.get("expansion"),
+        yield_strength=given.get("yield_strength"),
+        density=given.get("density"),
+        source="file",
+        basis="given",
     )
-
-
-def outline(r: Reader, path: Path_, value: Any) -> Rectangle | Ring:
-    """Corners of a rectangle, or the diameters of a ring."""
-    if isinstance(value, list):
-        x0, y0, x1, y1 = r.several(path, value, PLAIN["length"], (4,))
-        if x0 >= x1 or y0 >= y1:
-            raise r.stop(
-                path, "outline-empty", show(value), "[x0, y0, x1, y1] with x0 < x1 and y0 < y1", "swap the corners"
-            )
-        return Rectangle(x0, y0, x1, y1)
-    typed = r.table(path, value, ("outer_diameter", "inner_diameter"), "an outline")
-    if "outer_diameter" not in typed:
-        raise r.stop(path, "missing-key", "no outer_diameter", "an outline", "add outer_diameter")
-    outer = r.limited((*path, "outer_diameter"), typed["outer_diameter"], POSITIVE["length"])
-    inner = r.quantity((*path, "inner_diameter"), typed.get("inner_diameter", 0), "length")
-    if not 0 <= inner < outer:
-        raise r.stop(path, "outline-empty", show(value), "an inner diameter below the outer", "correct the diameters")
-    return Ring(outer, inner)
 
 
 def interface_friction(r: Reader, path: Path_, value: Any) -> Friction:
@@ -129,107 +115,73 @@ def interface_friction(r: Reader, path: Path_, value: Any) -> Friction:
 
 
 def _tabled_friction(r: Reader, path: Path_, value: Any) -> Friction:
-    typed = r.table(path, value, ("pair", "preparation"), "a friction pair")
-    if "pair" not in typed:
-        raise r.stop(path, "missing-key", "no pair", "a friction pair", 'add pair = "steel / steel"')
+    what = 'a pair of the table, { pair = "steel / steel" }'
+    typed = r.table(path, value, ("pair", "preparation"), what, ("pair",))
     pair = r.text((*path, "pair"), typed["pair"])
     preparation = r.text((*path, "preparation"), typed.get("preparation", ""))
-    wet = r.document.tree.get("interface", {}).get("fluid_can_reach", True)
-    lubrication = "lubricated" if wet else "dry"
+    wet = r.document.tree["interface"].get("fluid_can_reach")
+    lubrication = "dry" if wet is False else "lubricated"
     row = library.friction(pair, preparation, lubrication)
     if row is None:
-        known = [p for p in library.choices("friction", "pair")]
-        close = nearest(pair, known)
-        remedy = (
-            f"did you mean {close}?"
-            if close and close != pair
-            else "give [lowest, highest], or see slip tables friction"
+        known = [known for known in library.choices("friction", "pair") if library.friction(known, "", lubrication)]
+        see = "give [lowest, highest]; slip tables friction lists the pairs"
+        raise _looked_up(
+            r, (*path, "pair"), pair, "unknown-pair", f"a pair of the table with a {lubrication} row", known, see
         )
-        raise r.stop(path, "unknown-pair", show(value), f"a pair of the table with a {lubrication} row", remedy)
-    if wet and "fluid_can_reach" not in r.document.tree.get("interface", {}):
+    if wet is None:
         r.assume("fluid", "fluid can reach the face: the lubricated row counts", "interface.fluid_can_reach")
-    text = f"{row['pair']}, {lubrication}"
-    return Friction(number(row, "low"), number(row, "high"), row["source"], row["basis"], text)
+    if preparation and not row["preparation"]:
+        text = f"the table has no {row['pair']} for preparation {show(preparation)}: its row for any preparation"
+        r.assume("friction-preparation", text, "interface.friction")
+    return Friction(
+        number(row, "low"), number(row, "high"), row["source"], row["basis"], f"{row['pair']}, {lubrication}"
+    )
 
 
 def roughness(r: Reader, path: Path_, value: Any) -> tuple[Roughness, Roughness]:
     """Roughness of both faces, or one text for both."""
     items = value if isinstance(value, list) else [value, value]
     if len(items) != 2:
-        raise r.stop(
-            path, "wrong-count", show(value), "the roughness of the two faces", 'write ["Ra 0.8 um", "Ra 1.6 um"]'
-        )
-    upper, lower = (_roughness(r, path, item) for item in items)
+        expected, remedy = "the roughness of the two faces", 'write ["Ra 0.8 um", "Ra 1.6 um"]'
+        raise r.stop(path, "wrong-count", show(value), expected, remedy)
+    if not isinstance(value, list):
+        both = _roughness(r, path, value)
+        return both, both
+    upper, lower = r.every(partial(_roughness, r, (*path, i), item) for i, item in enumerate(items))
     return upper, lower
 
 
 def _roughness(r: Reader, path: Path_, item: Any) -> Roughness:
     words = item.split(None, 1) if isinstance(item, str) else []
     if len(words) != 2 or words[0] not in ("Ra", "Rq", "Rz"):
-        raise r.stop(
-            path,
-            "roughness-label",
-            show(item),
-            "a label Ra, Rq or Rz before the value",
-            'write for instance "Ra 0.8 um"',
-        )
-    return Roughness(words[0], r.limited(path, words[1], POSITIVE["length"]))
-
-
-def positions(r: Reader, path: Path_, value: Any) -> tuple[tuple[float, float], ...]:
-    """Bolt positions [[x, y], ..]."""
-    if not isinstance(value, list) or not value:
-        raise r.stop(path, "wrong-count", show(value), "a list of positions", "write [[x, y], [x, y]]")
-    points = [r.attempt(lambda item=item: r.several(path, item, PLAIN["length"], (2,))) for item in value]  # type: ignore[misc]
-    if any(point is None for point in points):
-        raise Stop
-    return tuple((p[0], p[1]) for p in points if p is not None)
-
-
-def names(r: Reader, path: Path_, value: Any) -> tuple[str, ...]:
-    """Bolt names."""
-    if not isinstance(value, list) or not all(isinstance(item, str) and item.strip() for item in value):
-        raise r.stop(path, "not-a-text", show(value), "a list of names", 'write ["A1", "A2"]')
-    return tuple(value)
-
-
-def _whole(r: Reader, path: Path_, value: Any) -> int:
-    if isinstance(value, bool) or not isinstance(value, int) or not 1 <= value <= 10_000:
-        raise r.stop(path, "not-a-whole-number", show(value), "a whole number from 1 to 10000", "write for instance 3")
-    return value
-
-
-def grid(r: Reader, path: Path_, value: Any) -> tuple[tuple[float, float], ...]:
-    """Rows and columns round the origin, row by row from the lowest y."""
-    typed = r.table(path, value, ("columns", "rows", "pitch"), "a grid")
-    columns, rows = (_whole(r, (*path, name), typed.get(name)) for name in ("columns", "rows"))
-    across, up = r.several((*path, "pitch"), typed.get("pitch"), POSITIVE["length"], (2,))
-    return tuple(
-        (across * (column - (columns - 1) / 2), up * (row - (rows - 1) / 2))
-        for row in range(rows)
-        for column in range(columns)
-    )
-
-
-def circle(r: Reader, path: Path_, value: Any) -> tuple[tuple[float, float], ...]:
-    """Bolts on a circle round the origin, the first on the x axis, then anticlockwise."""
-    from math import cos, pi, sin
-
-    typed = r.table(path, value, ("count", "diameter"), "a bolt circle")
-    count = _whole(r, (*path, "count"), typed.get("count"))
-    diameter = r.limited((*path, "diameter"), typed.get("diameter"), POSITIVE["length"])
-    angles = (2 * pi * i / count for i in range(count))
-    return tuple((diameter / 2 * cos(a), diameter / 2 * sin(a)) for a in angles)
+        expected, remedy = "a label Ra, Rq or Rz before the value", 'write for instance "Ra 0.8 um"'
+        raise r.stop(path, "roughness-label", show(item), expected, remedy)
+    return Roughness(words[0], r.limited(path, words[1], positive("length")))
 
 
 def preload(r: Reader, path: Path_, value: Any) -> PreloadForm:
     """[lowest, highest], ranges by bolt name, or a nominal."""
     if isinstance(value, dict):
-        ranges = {name: r.range((*path, name), item, POSITIVE["force"]) for name, item in value.items()}
-        return PreloadForm({("" if name == "others" else name): item for name, item in ranges.items()}, None)
+        ranges = r.every(partial(r.range, (*path, name), item, positive("force")) for name, item in value.items())
+        named = ("" if name == "others" else name for name in value)
+        return PreloadForm(dict(zip(named, ranges, strict=True)), None)
     if isinstance(value, list):
-        return PreloadForm({"": r.range(path, value, POSITIVE["force"])}, None)
-    return PreloadForm({}, r.limited(path, value, POSITIVE["force"]))
+        return PreloadForm({"": r.range(path, value, positive("force"))}, None)
+    return PreloadForm({}, r.limited(path, value, positive("force")))
+
+
+def _kind_of(r: Reader, path: Path_, value: Any, kinds: tuple[str, ...], code: str, expected: str, remedy: str) -> str:
+    """Which of several kinds of quantity a text is."""
+    try:
+        dimension = parse_unit(split(value)[1])[1] if isinstance(value, str) else None
+    except UnitError as error:
+        if error.code != "not-a-quantity":
+            raise r.stop(path, error.code, show(value), error.expected, error.remedy) from None
+        dimension = None
+    for kind in kinds:
+        if dimension == KINDS[kind]:
+            return kind
+    raise r.stop(path, code, show(value), expected, remedy)
 
 
 def embedding(r: Reader, path: Path_, value: Any) -> tuple[str, float]:
@@ -238,59 +190,44 @@ def embedding(r: Reader, path: Path_, value: Any) -> tuple[str, float]:
         return "auto", 0.0
     if value == 0 and not isinstance(value, (bool, str)):
         return "force", 0.0
-    try:
-        dimension = parse_unit(split(value)[1])[1] if isinstance(value, str) else None
-    except UnitError:
-        dimension = None
-    for kind in ("length", "force"):
-        if dimension == KINDS[kind]:
-            size = r.limited(path, value, Key("", "embedding", kind, "", least=0.0))
-            return kind, size
-    raise r.stop(
-        path,
-        "embedding-form",
-        show(value),
-        '"auto", a length, a force, or 0',
-        'write for instance "14.5 um" or "4500 N"',
-    )
+    expected, remedy = '"auto", a length, a force, or 0', 'write for instance "14.5 um" or "4500 N"'
+    kind = _kind_of(r, path, value, ("length", "force"), "embedding-form", expected, remedy)
+    return kind, r.limited(path, value, not_negative(kind))
 
 
 def thermal(r: Reader, path: Path_, value: Any) -> float | Rises:
     """A loss in N, or the rises of bolt and plates."""
+    expected, remedy = "a loss as a force, or the rises of bolt and plates", "write { bolt = 20, plates = [60, 20] }"
+    if isinstance(value, str):
+        _kind_of(r, path, value, ("force",), "thermal-form", expected, remedy)
     if not isinstance(value, dict):
-        return r.limited(path, value, Key("", "thermal", "force", "", least=0.0))
-    typed = r.table(path, value, ("bolt", "plates"), "temperature rises")
-    if set(typed) != {"bolt", "plates"}:
-        raise r.stop(
-            path, "missing-key", show(value), "the rises of bolt and plates", "write { bolt = 20, plates = [60, 20] }"
-        )
-    bolt = r.quantity((*path, "bolt"), typed["bolt"], "temperature rise")
-    plates = typed["plates"] if isinstance(typed["plates"], list) else [typed["plates"]]
-    rises = [r.quantity((*path, "plates"), item, "temperature rise") for item in plates]
+        return r.limited(path, value, not_negative("force"))
+    typed = r.table(path, value, ("bolt", "plates"), expected, ("bolt", "plates"))
+    plates = typed["plates"]
+    placed = [((*path, "bolt"), typed["bolt"])]
+    if isinstance(plates, list):
+        placed += [((*path, "plates", i), item) for i, item in enumerate(plates)]
+    else:
+        placed.append(((*path, "plates"), plates))
+    bolt, *rises = r.every(partial(r.limited, place, item, RISE) for place, item in placed)
     return Rises(bolt, tuple(rises))
 
 
 def other_end(r: Reader, path: Path_, value: Any) -> dict[str, Any]:
     """Components of the other end of an alternating case; what is not named stays constant."""
-    typed = r.table(path, value, LOAD, "the other end")
+    typed = r.table(path, value, ("shear", "axial", "moment"), "the other end")
     keys = BY_TABLE["case[]"]
-    return {name: read(r, (*path, name), item, keys[name]) for name, item in typed.items()}
+    values = r.every(partial(read, r, (*path, name), item, keys[name]) for name, item in typed.items())
+    return dict(zip(typed, values, strict=True))
 
 
 def present_stiffness(r: Reader, path: Path_, value: Any) -> tuple[str, float]:
     """The contact stiffness in use, in one of its forms."""
-    kinds = {
-        "per_area": "stiffness per area",
-        "per_node": "stiffness",
-        "elastic_slip": "length",
-        "edge_fraction": "number",
-        "of_normal": "number",
-    }
-    typed = r.table(path, value, kinds, "one form of the present stiffness")
+    typed = r.table(path, value, PRESENT, "one form of the present stiffness")
     if len(typed) != 1:
-        raise r.stop(path, "wrong-count", show(value), "exactly one form", "write for instance { per_area = 12000 }")
+        raise r.stop(path, "wrong-count", show(value), "exactly one form", 'write { per_area = "12000 N/mm^3" }')
     ((name, item),) = typed.items()
-    return name, r.limited((*path, name), item, Key("", name, kinds[name], "", least=0.0, above=True))
+    return name, r.limited((*path, name), item, positive(PRESENT[name], name))
 
 
 def anything(r: Reader, path: Path_, value: Any) -> Any:
@@ -298,7 +235,27 @@ def anything(r: Reader, path: Path_, value: Any) -> Any:
     return value
 
 
+def lists(r: Reader, path: Path_, value: Any, key: Key) -> Any:
+    """A number, or numbers, of a plain kind in the key's shape; ranges and lists as tuples."""
+    ranged, paired = key.shape in ("range", "one or range"), key.shape == "one or two"
+    if key.shape == "one" or (key.shape.startswith("one") and not isinstance(value, list)):
+        number = r.limited(path, value, key)
+        return (number, number) if ranged else number
+    if ranged:
+        return r.range(path, value, key)
+    if paired:
+        return r.several(path, value, key, "[first, second]", (2,))
+    form, counts = {
+        "2": ("[x, y]", (2,)),
+        "3": ("[x, y, normal]", (3,)),
+        "2 or 3": ("[x, y] or [x, y, z]", (2, 3)),
+    }[key.shape]
+    return r.several(path, value, key, form, counts)
+
+
 FORMS: dict[str, Callable[[Reader, Path_, Any], Any]] = {
+    "text": Reader.text,
+    "flag": flag,
     "thread": thread,
     "material": material,
     "outline": outline,
@@ -315,43 +272,11 @@ FORMS: dict[str, Callable[[Reader, Path_, Any], Any]] = {
     "present stiffness": present_stiffness,
     "anything": anything,
 }
+LIMITED: dict[str, Callable[[Reader, Path_, Any, Key], Any]] = {"choice": choice, "whole": whole}
 
 
 def read(r: Reader, path: Path_, value: Any, key: Key) -> Any:
-    """The value of a key as its kind and shape say, in inside units; ranges and lists as tuples."""
+    """The value of a key as its kind and shape say, in inside units."""
     if key.kind in FORMS:
         return FORMS[key.kind](r, path, value)
-    if key.kind == "text":
-        return r.text(path, value)
-    if key.kind == "choice":
-        if value not in key.choices or isinstance(value, bool):
-            close = nearest(str(value), key.choices)
-            allowed = ", ".join(f'"{choice}"' for choice in key.choices)
-            remedy = f'did you mean "{close}"?' if close else "choose one of them"
-            raise r.stop(path, "unknown-choice", show(value), f"one of {allowed}", remedy)
-        return value
-    if key.kind == "flag":
-        if not isinstance(value, bool):
-            raise r.stop(path, "not-a-flag", show(value), "true or false", "write it without quotes")
-        return value
-    if key.kind == "whole":
-        if isinstance(value, bool) or not isinstance(value, int) or not key.least <= value <= key.most:
-            raise r.stop(
-                path,
-                "not-a-whole-number",
-                show(value),
-                f"a whole number from {key.least:g} to {key.most:g}",
-                "write it as 1",
-            )
-        return value
-    if key.shape == "range":
-        return r.range(path, value, key)
-    if key.shape == "one or range":
-        return r.range(path, value, key) if isinstance(value, list) else (r.limited(path, value, key),) * 2
-    if key.shape == "one or two":
-        return r.several(path, value, key, (2,)) if isinstance(value, list) else r.limited(path, value, key)
-    if key.shape == "2 or 3":
-        return r.several(path, value, key, (2, 3))
-    if key.shape.isdigit():
-        return r.several(path, value, key, (int(key.shape),))
-    return r.limited(path, value, key)
+    return LIMITED.get(key.kind, lists)(r, path, value, key)

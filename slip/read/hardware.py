@@ -1,190 +1,198 @@
-"""Builders of the parts: pattern, bolt, plates; and what the springs need of them."""
+"""Builders of the clamped parts: bolt and plates; and what the springs need of them."""
 
 from __future__ import annotations
 
-import numpy as np
+from functools import partial
 
 from slip.base.tables import number
-from slip.joint.bolt import Bolt, Grade, Segment
+from slip.joint.bolt import Bolt, Grade, Segment, Thread
 from slip.joint.material import Material
 from slip.joint.pattern import Pattern
 from slip.joint.plates import Plate, clamped
 from slip.read import library
-from slip.read.bolt_list import BoltList, check_bolts, read_bolt_list
 from slip.read.reader import Reader, nearest
 from slip.read.sections import Section, many
 
 STEEL = "steel"
-
-
-def pattern(r: Reader, section: Section) -> BoltList:
-    forms = [name for name in ("positions", "grid", "circle", "file") if section.has(name)]
-    if len(forms) > 1:
-        raise section.stop(
-            forms[1], "too-many-forms", " and ".join(forms), "one of positions, grid, circle, file", "keep one"
-        )
-    if not forms:
-        r.assume("one-bolt", "one bolt, at the origin", "pattern.positions")
-        return BoltList(Pattern(("B1",), np.zeros((1, 2))), None, None, "")
-    if forms[0] == "file":
-        return read_bolt_list(r, section)
-    points = section.get(forms[0])
-    names = section.get("names", tuple(f"B{i + 1}" for i in range(len(points))))
-    check_bolts(section, forms[0], names, points)
-    return BoltList(Pattern(names, np.array(points, dtype=float)), None, None, "")
+# What the springs take where [bolt] is silent: key, code and words of the assumption.
+SPRING_DEFAULTS = (
+    ("far_end", "far-end-nut", "a nut at the far end"),
+    ("material", "bolt-steel", "bolt and washers of steel"),
+    ("shank_diameter", "shank-nominal", "shank as thick as the thread"),
+)
 
 
 def bolt(r: Reader, s: Section) -> Bolt:
-    thread = s.get("thread")
-    diameter = thread.diameter if thread else None
-    structural = str(s.get("grade", "")).upper().startswith(("A325", "A490"))
-    head = s.get("head", "heavy hexagon" if structural else "hexagon")
-    hole = s.get("hole_diameter")
-    if hole is None and diameter is not None and (row := library.clearance_hole(diameter)):
-        hole = number(row, "hole[mm]")
-        r.assume("hole-medium", f"hole {r.system.say(hole, 'length')}, medium fit", "bolt.hole_diameter")
-    if hole is not None and diameter is not None and hole < diameter:
-        expected = f"a hole not smaller than the thread, {r.system.say(diameter, 'length')}"
-        raise s.stop_value("hole_diameter", "hole-below-thread", expected, "correct hole or thread")
-    bearing = s.get("bearing_diameter")
-    if bearing is None and diameter is not None and (row := library.bearing_diameter(head, diameter)):
-        bearing = number(row, "bearing_diameter[mm]")
-        r.assume(
-            "bearing-table", f"bearing diameter {r.system.say(bearing, 'length')}, {head} head", "bolt.bearing_diameter"
-        )
-    if bearing is not None and hole is not None and bearing <= hole:
-        found = f"bearing {r.system.say(bearing, 'length')} and hole {r.system.say(hole, 'length')}"
-        key = "bearing_diameter" if s.has("bearing_diameter") else "hole_diameter"
-        raise s.stop(
-            key,
-            "bearing-below-hole",
-            found,
-            "a bearing face wider than the hole",
-            "correct one, or give bearing_diameter",
-        )
-    segments = tuple(
-        Segment(e.need("diameter", "of the piece", "add it"), e.need("length", "of the piece", "add it"))
-        for e in many(r, "segment", "bolt.segment[]", ("bolt",), s.raw)
+    """The bolt of [bolt]; lengths stay None where neither file nor table can say."""
+    thread: Thread | None = s.get("thread")
+    grades, holes, shanks, segments, washers = r.every(
+        [
+            lambda: (_grade(s, thread),),
+            lambda: (_hole(r, s, thread),),
+            lambda: (s.get("shank_diameter", thread.diameter if thread else None),),
+            lambda: tuple(r.every(partial(_segment, e) for e in many(r, "bolt.segment[]", s.path, s.raw))),
+            lambda: _washers(s),
+        ]
     )
-    washers = s.get("washer_thickness", 0.0)
+    head = s.get("head", "heavy hexagon" if _structural(s) else "hexagon")
     return Bolt(
         thread=thread,
-        grade=_grade(r, s, diameter),
+        grade=grades[0],
         head=head,
-        bearing_diameter=bearing,
-        hole_diameter=hole,
-        shank_diameter=s.get("shank_diameter", diameter),
+        bearing_diameter=_bearing(r, s, head, thread, holes[0]),
+        hole_diameter=holes[0],
+        shank_diameter=shanks[0],
         segments=segments,
         tapped=s.get("far_end", "nut") == "tapped",
-        washers=washers if isinstance(washers, tuple) else (washers, 0.0),
+        washers=washers,
         material=s.get("material") or steel(),
     )
 
 
 def steel() -> Material:
+    """The steel of bolts and washers for which the file names no material."""
     material = library.material(STEEL)
     assert material is not None
     return material
 
 
-def _grade(r: Reader, s: Section, diameter: float | None) -> Grade | None:
+def _structural(s: Section) -> bool:
+    return str(s.get("grade", "")).upper().startswith(("A325", "A490"))
+
+
+def _hole(r: Reader, s: Section, thread: Thread | None) -> float | None:
+    """The clearance hole, by the table when the file is silent."""
+    row = library.clearance_hole(thread) if thread is not None else None
+    medium = number(row, "hole[mm]") if row is not None else None
+    hole: float | None = s.get("hole_diameter")
+    if hole is None:
+        if medium is not None:
+            r.assume("hole-medium", f"hole {r.system.say(medium, 'length')}, medium fit", "bolt.hole_diameter")
+        return medium
+    if thread is not None and hole < thread.diameter:
+        expected = f"a hole not smaller than the thread, {r.system.say(thread.diameter, 'length')}"
+        remedy = f'write for instance "{r.system.say(medium or 1.1 * thread.diameter, "length")}"'
+        raise s.stop_value("hole_diameter", "hole-below-thread", expected, remedy)
+    return hole
+
+
+def _bearing(r: Reader, s: Section, head: str, thread: Thread | None, hole: float | None) -> float | None:
+    """The outer diameter of the bearing face, by the table of heads when the file is silent."""
+    bearing: float | None = s.get("bearing_diameter")
+    if bearing is None and thread is not None and (row := library.bearing_diameter(head, thread)):
+        bearing = number(row, "bearing_diameter[mm]")
+        text = f"bearing diameter {r.system.say(bearing, 'length')}, {head} head"
+        r.assume("bearing-table", text, "bolt.bearing_diameter")
+    if bearing is not None and hole is not None and bearing <= hole:
+        found = f"bearing {r.system.say(bearing, 'length')} and hole {r.system.say(hole, 'length')}"
+        key = "bearing_diameter" if s.has("bearing_diameter") else "hole_diameter"
+        remedy = "correct one of them; bearing_diameter is the outer diameter of the face"
+        raise s.stop(key, "bearing-below-hole", found, "a bearing face wider than the hole", remedy)
+    return bearing
+
+
+def _segment(s: Section) -> Segment:
+    """A piece of the bolt in the grip."""
+    diameter = s.need("diameter", "the diameter of the piece", 'add diameter = "16 mm"')
+    return Segment(diameter, s.need("length", "the length of the piece", 'add length = "30 mm"'))
+
+
+def _washers(s: Section) -> tuple[float, float]:
+    """Thicknesses of the washers under head and nut."""
+    washers = s.get("washer_thickness", 0.0)
+    head, nut = washers if isinstance(washers, tuple) else (washers, 0.0)
+    if nut and s.get("far_end", "nut") == "tapped":
+        expected = "no washer under a nut, with a tapped far end"
+        raise s.stop_value("washer_thickness", "washer-without-nut", expected, "write the washer under the head alone")
+    return head, nut
+
+
+def _grade(s: Section, thread: Thread | None) -> Grade | None:
+    """Strengths of the bolt: by the table of grades, by the file, or by both."""
     low, high = s.get("yield_strength"), s.get("tensile_strength")
-    if low is not None and high is not None and low > high:
-        raise s.stop_value(
-            "yield_strength", "range-upside-down", "a yield strength below the tensile strength", "swap them"
-        )
+    tabled = _tabled_grade(s, thread) if s.has("grade") else None
+    if tabled is None and low is None:
+        if high is not None:
+            expected = "the yield strength beside the tensile strength"
+            raise s.stop("yield_strength", "missing-key", "nothing", expected, 'add yield_strength = "640 MPa"')
+        return None
+    if tabled is not None and low is None and high is None:
+        return tabled
+    low = tabled.yield_strength if low is None and tabled else low
+    nominal = high if high is not None else tabled.tensile_nominal if tabled else low
+    high = high if high is not None else tabled.tensile_strength if tabled else low
+    if low > high:
+        key = "yield_strength" if s.has("yield_strength") else "tensile_strength"
+        expected = "a yield strength not above the tensile strength"
+        raise s.stop_value(key, "range-upside-down", expected, "give both strengths, the lower one as yield_strength")
+    return Grade(tabled.name if tabled else "given", low, high, nominal, "file", "given")
+
+
+def _tabled_grade(s: Section, thread: Thread | None) -> Grade:
     name = s.get("grade")
-    if name is None:
-        if low is None:
-            return None
-        return Grade(
-            "given", low, high if high is not None else low, high if high is not None else low, "file", "given"
-        )
-    found = library.grade(name, diameter) if diameter is not None else None
+    if thread is None:
+        remedy = 'add thread = "M16", or write yield_strength in place of the grade'
+        raise s.stop("grade", "missing-key", "a grade without thread", "the thread that the grade goes with", remedy)
+    found = library.grade(name, thread.diameter)
     if found is None:
         known = library.choices("grades", "name")
-        close = nearest(name, known)
-        wrong_size = any(name.casefold() == k.casefold() for k in known)
-        remedy = (
-            f"did you mean {close}?" if close and not wrong_size else "see slip tables grades, or give yield_strength"
-        )
-        expected = "a grade of the table for this thread" if wrong_size else "a grade of the table"
-        if diameter is None:
-            expected, remedy = "a thread with the grade", "add thread"
+        wrong_size = any(name.strip().casefold() == word.casefold() for word in known)
+        close = "" if wrong_size else nearest(name, known)
+        expected = f"a grade of the table for {thread.designation}" if wrong_size else "a grade of the table"
+        remedy = f'did you mean "{close}"?' if close else "see slip tables grades, or give yield_strength"
         raise s.stop_value("grade", "unknown-grade", expected, remedy)
-    if low is None and high is None:
-        return found
-    return Grade(
-        found.name,
-        low if low is not None else found.yield_strength,
-        high if high is not None else found.tensile_strength,
-        high if high is not None else found.tensile_nominal,
-        "file",
-        "given",
-    )
+    return found
 
 
 def plates(r: Reader, pattern: Pattern | None, bolt: Bolt | None) -> tuple[Plate, ...]:
-    sections = many(r, "plate", "plate[]")
-    plates = [
-        Plate(
-            s.get("name", f"plate {i + 1}"),
-            s.get("material"),
-            s.need("thickness", "of each plate", 'add thickness = "20 mm"'),
-            s.get("outline"),
-            s.get("load_edge", ""),
-        )
-        for i, s in enumerate(sections)
-    ]
-    if len(plates) == 1:
-        raise r.stop(
-            ("plate",), "one-plate", "one [[plate]]", "none, or the two or more that are clamped", "add the other plate"
-        )
-    for plate, s in zip(plates, sections, strict=True):
-        if pattern is None or plate.outline is None:
-            continue
-        outside = plate.outline.edge_distance(pattern.positions) < 0
-        if outside.any():
-            names = ", ".join(name for name, out in zip(pattern.names, outside, strict=True) if out)
-            raise s.stop(
-                "outline", "bolt-outside", names, "every bolt inside the outline", "correct outline or positions"
-            )
-    if bolt and bolt.segments and plates:
-        grip = sum(p.thickness for p in clamped(tuple(plates), bolt.tapped)) + sum(bolt.washers)
-        length = sum(piece.length for piece in bolt.segments)
-        if abs(length - grip) > 0.01 * grip:
-            found = f"pieces of {r.system.say(length, 'length')} together"
-            expected = f"the grip of {r.system.say(grip, 'length')}"
-            raise r.stop(("bolt", "segment"), "segments-not-grip", found, expected, "let the pieces fill the grip")
-    return tuple(plates)
+    """The plates of all [[plate]]; none, or two and more."""
+    sections = many(r, "plate[]")
+    built = r.every(partial(_plate, s, i, pattern) for i, s in enumerate(sections))
+    if len(built) == 1:
+        expected = "no plate, or the two or more that are clamped together"
+        raise r.stop(("plate",), "one-plate", "one [[plate]]", expected, "add a [[plate]] for the other plate")
+    if bolt and bolt.segments and built:
+        _check_grip(r, bolt, tuple(built))
+    return tuple(built)
+
+
+def _plate(s: Section, i: int, pattern: Pattern | None) -> Plate:
+    thickness = s.need("thickness", "the thickness of the plate", 'add thickness = "20 mm"')
+    name, outline = s.get("name", f"plate {i + 1}"), s.get("outline")
+    if pattern is not None and outline is not None:
+        outside = outline.edge_distance(pattern.positions) < 0
+        names = [bolt for bolt, out in zip(pattern.names, outside, strict=True) if out]
+        if names:
+            found = f"{', '.join(names[:8])} outside"
+            raise s.stop("outline", "bolt-outside", found, "all bolts inside", "correct outline or positions")
+    return Plate(name, s.get("material"), thickness, outline, s.get("load_edge", ""))
+
+
+def _check_grip(r: Reader, bolt: Bolt, plates: tuple[Plate, ...]) -> None:
+    """The pieces of a bolt must fill the grip."""
+    grip = sum(plate.thickness for plate in clamped(plates, bolt.tapped)) + sum(bolt.washers)
+    length = sum(piece.length for piece in bolt.segments)
+    if abs(length - grip) > 0.01 * grip:
+        found = f"pieces of {r.system.say(length, 'length')} together"
+        expected = f"the grip of {r.system.say(grip, 'length')}"
+        raise r.stop(("bolt", "segment"), "segments-not-grip", found, expected, "let the lengths add up to the grip")
+
+
+def assume_springs(r: Reader, plates: tuple[Plate, ...]) -> None:
+    """Say what the springs take where [bolt] is silent; without plates there are no springs."""
+    given = r.document.tree.get("bolt", {})
+    for key, code, text in SPRING_DEFAULTS:
+        if plates and key not in given:
+            r.assume(code, text, f"bolt.{key}")
 
 
 def need_springs(r: Reader, plates: tuple[Plate, ...], bolt: Bolt, what: str, otherwise: str) -> None:
     """What the springs of bolt and plates need; a fault names what is missing and what asks for it."""
     if not plates:
-        raise r.stop(
-            ("plate",),
-            "missing-key",
-            "no [[plate]]",
-            f"the plates, for the springs that {what} needs",
-            f"add them, or {otherwise}",
-        )
-    for i, plate in enumerate(plates):
-        if plate.material is None:
-            path = ("plate", i, "material")
-            raise r.stop(
-                path,
-                "missing-key",
-                "nothing",
-                f"material, for the springs that {what} needs",
-                f"add it, or {otherwise}",
-            )
-    for name in ("thread", "bearing_diameter", "hole_diameter"):
-        if getattr(bolt, name) is None:
-            raise r.stop(
-                ("bolt", name),
-                "missing-key",
-                "nothing",
-                f"{name}, for the springs that {what} needs",
-                f"add it, or {otherwise}",
-            )
+        expected = f"the clamped plates, for the springs that {what} needs"
+        raise r.stop(("plate",), "missing-key", "no [[plate]]", expected, f"add them, or {otherwise}")
+    paths = [("plate", i, "material") for i, plate in enumerate(plates) if plate.material is None]
+    names = ("thread", "bearing_diameter", "hole_diameter")
+    for path in (*paths, *(("bolt", name) for name in names if getattr(bolt, name) is None)):
+        expected = f"{path[-1]}, for the springs that {what} needs"
+        raise r.stop(path, "missing-key", "nothing", expected, f"add {path[-1]}, or {otherwise}")

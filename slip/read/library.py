@@ -3,18 +3,20 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Iterable
 
 from slip.base.tables import Row, find, number, table
 from slip.joint.bolt import Grade, Thread
 from slip.joint.material import Material
 from slip.joint.tightening import Scatter
 
-METRIC = re.compile(r"M(\d+(?:\.\d+)?)(?:x(\d+(?:\.\d+)?))?", re.IGNORECASE)
+METRIC = re.compile(r"m\s*([0-9]{1,3}(?:\.[0-9]{1,3})?)(?:x([0-9]{1,2}(?:\.[0-9]{1,3})?))?")
+PITCH_RATIO = (0.02, 0.26)  # pitch over diameter: M64x1.5 and M1.6x0.35 lie inside
 
 
 def thread(designation: str) -> Thread | None:
     """Thread of the table by designation ("M16", "M16x1.5", "3/4-10 UNC", also "3/4-10"), or an ISO metric thread of another pitch."""
-    wanted = re.sub(r"\s*[x×]\s*", "x", " ".join(designation.split())).casefold()
+    wanted = re.sub(r"\s*[x×]\s*", "x", " ".join(designation.casefold().split()))
     for row in table("threads"):
         names = {row["designation"].casefold(), row["designation"].rsplit(" ", 1)[0].casefold()}
         if row["system"] == "metric" and row["series"] == "coarse":
@@ -30,9 +32,20 @@ def thread(designation: str) -> Thread | None:
                 row["basis"],
             )
     match = METRIC.fullmatch(wanted)
-    if match and match.group(2) and 0.05 <= float(match.group(2)) / float(match.group(1)) <= 0.26:
-        return Thread(designation, float(match.group(1)), float(match.group(2)), False, "iso724", "memory")
+    if match and match.group(2):
+        diameter, pitch = (float(text) for text in match.groups())
+        if PITCH_RATIO[0] * diameter <= pitch <= PITCH_RATIO[1] * diameter and pitch > 0:
+            return Thread(f"M{diameter:g}x{pitch:g}", diameter, pitch, False, "iso724", "memory")
     return None
+
+
+def thread_near(designation: str) -> str:
+    """Designation of the ISO coarse thread of nearest diameter, or '' when no metric diameter is named."""
+    match = METRIC.match(designation.strip().casefold())
+    if match is None:
+        return ""
+    coarse = [row for row in table("threads") if row["series"] == "coarse"]
+    return min(coarse, key=lambda row: abs(number(row, "diameter[mm]") - float(match.group(1))))["designation"]
 
 
 def grade(name: str, diameter: float) -> Grade | None:
@@ -56,16 +69,21 @@ def _between(row: Row, low: str, high: str, value: float) -> bool:
     return (not row[low] or number(row, low) <= value + 1e-9) and (not row[high] or value <= number(row, high) + 1e-9)
 
 
-def bearing_diameter(head: str, diameter: float) -> Row | None:
-    """Row of the bearing face of a head kind for a thread diameter in mm."""
-    rows = (row for row in table("heads") if row["head"] == head)
-    return next((row for row in rows if abs(number(row, "diameter[mm]") - diameter) < 0.02), None)
+def bearing_diameter(head: str, thread: Thread) -> Row | None:
+    """Row of the bearing face of a head kind for a thread."""
+    return _of_thread((row for row in table("heads") if row["head"] == head), thread)
 
 
-def clearance_hole(diameter: float) -> Row | None:
-    """Row of the clearance hole of medium (normal) fit for a thread diameter in mm."""
-    rows = (row for row in table("holes") if row["fit"] in ("medium", "normal"))
-    return next((row for row in rows if abs(number(row, "diameter[mm]") - diameter) < 0.02), None)
+def clearance_hole(thread: Thread) -> Row | None:
+    """Row of the clearance hole of medium (normal) fit for a thread."""
+    return _of_thread((row for row in table("holes") if row["fit"] in ("medium", "normal")), thread)
+
+
+def _of_thread(rows: Iterable[Row], thread: Thread) -> Row | None:
+    """First row of the thread's system and diameter; a #6 is not an M3.5."""
+    system = "unified" if thread.unified else "metric"
+    own = (row for row in rows if row["system"] == system)
+    return next((row for row in own if abs(number(row, "diameter[mm]") - thread.diameter) < 0.001), None)
 
 
 def material(name: str) -> Material | None:
@@ -88,14 +106,16 @@ def material(name: str) -> Material | None:
 
 
 def friction(pair: str, preparation: str, lubrication: str) -> Row | None:
-    """Row of the interface friction of a pair, in either order of its two words."""
-    words = [part.strip().casefold() for part in pair.split("/")]
-    for row in table("friction"):
-        named = [part.strip().casefold() for part in row["pair"].split("/")]
-        prepared = not preparation or row["preparation"].casefold() == preparation.strip().casefold()
-        if sorted(named) == sorted(words) and row["lubrication"] == lubrication and prepared:
-            return row
-    return None
+    """Row of the interface friction of a pair, in either order of its two words; of a preparation that no row of the pair
+    names, the row for any preparation."""
+
+    def words(text: str) -> list[str]:
+        return sorted(part.strip().casefold() for part in text.split("/"))
+
+    rows = [row for row in table("friction") if words(row["pair"]) == words(pair) and row["lubrication"] == lubrication]
+    wanted = preparation.strip().casefold()
+    named = {row["preparation"].casefold(): row for row in rows}
+    return named.get(wanted) or named.get("")
 
 
 def scatter(method: str) -> Scatter | None:

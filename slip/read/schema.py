@@ -38,6 +38,16 @@ def _length(table: str, name: str, help: str, **more: object) -> Key:
     return Key(table, name, "length", help, least=0.0, above=True, **more)  # type: ignore[arg-type]
 
 
+def positive(kind: str, name: str = "") -> Key:
+    """A value above zero that stands inside another value."""
+    return Key("", name, kind, "", least=0.0, above=True)
+
+
+def not_negative(kind: str) -> Key:
+    """A value of zero or more that stands inside another value."""
+    return Key("", "", kind, "", least=0.0)
+
+
 # Tables in file order, with a line each; a name with [] is an array of tables.
 TABLES: dict[str, str] = {
     "": "the file as a whole",
@@ -131,10 +141,11 @@ KEYS: tuple[Key, ...] = (
         "share",
         "the wrench alone, in place of method; multiplies the friction range",
         least=0,
+        most=1,
     ),
-    Key("tightening", "scatter", "share", "plus and minus, a bound; in place of method", least=0),
+    Key("tightening", "scatter", "share", "plus and minus, a bound; in place of method", least=0, most=1),
     Key("tightening", "scatter_ratio", "number", "highest / lowest preload; in place of method", least=1),
-    Key("tightening", "scatter_sigma", "share", "standard deviation; with sigmas", least=0),
+    Key("tightening", "scatter_sigma", "share", "standard deviation; with sigmas", least=0, most=1),
     Key("tightening", "sigmas", "number", "how many scatter_sigma are the bound", least=0, above=True, most=6),
     Key(
         "tightening",
@@ -146,7 +157,7 @@ KEYS: tuple[Key, ...] = (
     Key("tightening", "source", "text", "where torque or preload comes from"),
     # losses
     Key("losses", "embedding", "embedding", '"auto" (table), a length, or a force', default='"auto"'),
-    Key("losses", "relaxation", "share", "of the assembly preload", least=0, default="5 %"),
+    Key("losses", "relaxation", "share", "of the assembly preload", least=0, most=1, default="5 %"),
     Key("losses", "thermal", "thermal", "rises { bolt =, plates = [..] }, or a loss as a force", default="none"),
     # plates
     Key("plate[]", "name", "text", "what the plate is"),
@@ -166,7 +177,6 @@ KEYS: tuple[Key, ...] = (
         "edge through which the plate's load enters or leaves",
         choices=("left", "right", "bottom", "top"),
         needed_for=PARTIAL,
-        later=True,
     ),
     # interface
     Key(
@@ -209,12 +219,9 @@ KEYS: tuple[Key, ...] = (
         shape="range",
         least=0,
         above=True,
-        later=True,
     ),
     Key("interface", "pressure", "pressure", "known pressure of a face without bolts", least=0, above=True, later=True),
-    Key(
-        "interface", "plate_shear", "flag", "count the plates' shear through the thickness", default="true", later=True
-    ),
+    Key("interface", "plate_shear", "flag", "count the plates' shear through the thickness", default="true"),
     # pattern
     Key("pattern", "positions", "positions", "[[x, y], ..]: names B1, B2, .. in this order"),
     Key("pattern", "names", "names", "names in place of B1, B2, .."),
@@ -246,7 +253,7 @@ KEYS: tuple[Key, ...] = (
     Key(
         "required", "grows", "choice", "what the factor multiplies", choices=("all loads", "shear"), default="all loads"
     ),
-    Key("required", "true_slip", "length", "your own limit of true slip", least=0, later=True),
+    Key("required", "true_slip", "length", "your own limit of true slip", least=0),
     # standards
     Key(
         "standard[]",
@@ -291,7 +298,7 @@ KEYS: tuple[Key, ...] = (
     ),
     Key("standard[]", "safety_factor", "number", "NASA: factor of safety", least=1),
     Key("standard[]", "fitting_factor", "number", "NASA: fitting factor", least=1, default="1"),
-    Key("standard[]", "preload_variation", "share", "NASA: Gamma", least=0),
+    Key("standard[]", "preload_variation", "share", "NASA: Gamma", least=0, most=1),
     Key(
         "standard[]",
         "c_min",

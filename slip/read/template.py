@@ -2,12 +2,15 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
+
 from slip.base.errors import InputError, Problems
 from slip.base.units import KINDS, NONE, example
 from slip.read.schema import BY_TABLE, KEYS, TABLES, Key
 
+Values = Mapping[str, str | list[str]]
 # Values of an invented joint that passes slip check; keys that are not here are written as comments.
-BOLTED = {
+BOLTED: dict[str, str | list[str]] = {
     "format": "1",
     "title": '"Bearing bracket on a test bed"',
     "units": '"N mm"',
@@ -89,7 +92,9 @@ def template(kind: str) -> str:
     """Text of a commented joint file. Raises Problems for a kind that is not assessed yet."""
     if kind not in KINDS_OF_FILE:
         known = ", ".join(KINDS_OF_FILE)
-        raise Problems([InputError("contact-not-yet", "--kind", kind, f"one of {known}", "pressed contacts are not assessed yet")])
+        raise Problems(
+            [InputError("contact-not-yet", "--kind", kind, f"one of {known}", "pressed contacts are not assessed yet")]
+        )
     values = KINDS_OF_FILE[kind]
     lines = ["# A joint file. Lines with # are keys that may be given as well; an unknown key is an error.", ""]
     for table, what in TABLES.items():
@@ -98,7 +103,7 @@ def template(kind: str) -> str:
     return "\n".join(lines)
 
 
-def _table(table: str, what: str, values: dict[str, object]) -> list[str]:
+def _table(table: str, what: str, values: Values) -> list[str]:
     """A table with its keys; an array of tables as often as the values say; commented when it has none."""
     own = [v for path, v in values.items() if path.rpartition(".")[0] == table]
     count = max((len(v) for v in own if isinstance(v, list)), default=1)
@@ -111,7 +116,7 @@ def _table(table: str, what: str, values: dict[str, object]) -> list[str]:
     return lines
 
 
-def _keys(table: str, values: dict[str, object], entry: int) -> list[str]:
+def _keys(table: str, values: Values, entry: int) -> list[str]:
     lines = []
     for key in BY_TABLE[table].values():
         given = values.get(key.path, "")
@@ -132,8 +137,8 @@ def sample(key: Key) -> str:
         "thread": '"M16"',
         "material": '"steel"',
         "flag": "true",
-        "whole": "1",
-        "number": "1.5",
+        "whole": f"{key.least:g}",
+        "number": "1.5" if key.least <= 1.5 <= key.most else f"{(key.least + key.most) / 2:g}",
         "friction": "0.15",
         "interface friction": "[0.15, 0.25]",
         "preload": "[60000, 90000]",
@@ -174,8 +179,17 @@ def table_of_keys() -> str:
     """docs/input.md's reference part: every key with unit, range, default and meaning, as Markdown."""
     lines: list[str] = []
     for table, what in TABLES.items():
-        name = f"[[{table.removesuffix('[]')}]]" if table.endswith("[]") else f"[{table}]" if table else "Top of the file"
-        lines += [f"### {name}", "", f"{what[:1].upper()}{what[1:]}.", "", "| key | value | limits | meaning |", "| --- | --- | --- | --- |"]
+        name = (
+            f"[[{table.removesuffix('[]')}]]" if table.endswith("[]") else f"[{table}]" if table else "Top of the file"
+        )
+        lines += [
+            f"### {name}",
+            "",
+            f"{what[:1].upper()}{what[1:]}.",
+            "",
+            "| key | value | limits | meaning |",
+            "| --- | --- | --- | --- |",
+        ]
         for key in (k for k in KEYS if k.table == table):
             lines.append(f"| `{key.name}` | {_value(key)} | {_limits(key)} | {remark(key)} |".replace("|  |", "| - |"))
         lines.append("")
@@ -184,7 +198,12 @@ def table_of_keys() -> str:
 
 def _value(key: Key) -> str:
     """The form of a key's value in words."""
-    shape = {"range": "[low, high] of ", "one or range": "one or [low, high] of ", "one or two": "one or two of ", "2": "[x, y] of "}
+    shape = {
+        "range": "[low, high] of ",
+        "one or range": "one or [low, high] of ",
+        "one or two": "one or two of ",
+        "2": "[x, y] of ",
+    }
     shape |= {"3": "[x, y, z] of ", "2 or 3": "[x, y] or [x, y, z] of "}
     kind = key.kind if key.kind in KINDS else {"whole": "whole number", "flag": "true or false"}.get(key.kind, key.kind)
     return f"{shape.get(key.shape, '')}{kind}"

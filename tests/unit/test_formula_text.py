@@ -15,6 +15,9 @@ from slip.base.formulas import Formula, evaluate
 STAGES = ("clamp", "pressure", "friction", "verdict")
 DRAWS = 20
 USUAL = (0.1, 0.9)
+SHEARED = {"Q": (1, 5), "P": (60, 90)}  # below gross slip whatever the friction
+STRONG = {"F_S": (5, 9)}  # not all sliders slip
+WIDE = {"a": (1, 2)}  # the contact is wider than its flat part
 # Where the usual range is outside what a formula holds for: module.function -> argument -> range.
 RANGES: dict[str, dict[str, tuple[float, float]]] = {
     "clamp.springs.body_ratio": {"D_A": (5, 400), "d_w": (10, 20)},
@@ -25,6 +28,33 @@ RANGES: dict[str, dict[str, tuple[float, float]]] = {
     "clamp.thread.minor_diameter": {"d": (3, 42), "P": (0.5, 2)},
     "clamp.tightening.bound_from_ratio": {"alpha": (1, 4)},
     "clamp.tightening.variation": {"alpha": (1.01, 4), "z": (1, 4)},
+    "friction.closed.cylinder.displacement": SHEARED,
+    "friction.closed.cylinder.edge_stress": {"e_a": (0.01, 0.04)},
+    "friction.closed.cylinder.energy": SHEARED,
+    "friction.closed.cylinder.stick_ratio": SHEARED,
+    "friction.closed.flat.rounded_approach": WIDE,
+    "friction.closed.flat.rounded_force": WIDE,
+    "friction.closed.layers.layers_energy": {"P": (0.1, 2)},  # on both sides of the onset
+    "friction.closed.loops.slider_energy": {"u_0": (0.1, 5)},
+    "friction.closed.loops.uniform_displacement": STRONG,
+    "friction.closed.loops.uniform_energy": STRONG,
+    "friction.closed.loops.uniform_force": STRONG,
+    "friction.closed.loops.uniform_tangent_stiffness": STRONG,
+    "friction.closed.powerlaw.displacement": SHEARED,
+    "friction.closed.powerlaw.energy": SHEARED,
+    "friction.closed.powerlaw.stick_ratio": SHEARED,
+    "friction.closed.rough.displacement": SHEARED,
+    "friction.closed.rough.energy": SHEARED,
+    "friction.closed.rough.penalty_displacement": SHEARED,
+    "friction.closed.rough.penalty_energy": SHEARED,
+    "friction.closed.rough.tangent_stiffness": SHEARED,
+    "friction.closed.sphere.displacement": SHEARED,
+    "friction.closed.sphere.energy": SHEARED,
+    "friction.closed.sphere.stick_ratio": SHEARED,
+    "friction.closed.strip.force": WIDE,
+    "friction.closed.superposition.shear_share": SHEARED,
+    "friction.closed.superposition.stick_force": SHEARED,
+    "friction.law.load_factor": {"closed": (1, 1)},  # a switch: 0 or 1
 }
 
 

@@ -19,6 +19,7 @@ PLAIN_NUMBERS |= {"poissons_ratio", "threads_per_inch"}
 # What tells the rows of a table apart. A table that is not listed only has no two rows alike.
 KEYS = {
     "sources": ["key"],
+    "messages": ["code"],
     "threads": ["designation"],
     "grades": ["name", "diameter_from[mm]"],
     "heads": ["head", "system", "diameter[mm]"],
@@ -36,7 +37,9 @@ KEYS = {
 # Heads that are known not to cover the medium or normal clearance hole, as (head, diameter): none in the table.
 # Countersunk heads have no flat bearing face and therefore no row at all.
 SMALL_HEADS: set[tuple[str, float]] = set()
-TABLES = [path for path in FILES if path.name != "sources.csv"]
+# Tables of words, not of data: the sources themselves, and what each message means, which no document is the source of.
+WORDS = {"sources.csv", "messages.csv"}
+TABLES = [path for path in FILES if path.name not in WORDS]
 
 
 def rows(path: Path) -> list[Row]:
@@ -439,7 +442,7 @@ def test_materials_are_plausible_solids() -> None:
         assert 1500.0 < density < 9000.0, row
 
 
-@pytest.mark.parametrize("name", sorted(set(KEYS) - {"sources"}))
+@pytest.mark.parametrize("name", sorted(set(KEYS) - {"sources", "messages"}))
 def test_a_row_on_memory_says_so_in_its_citation(name: str) -> None:
     words = {row["key"]: row["citation"] for row in data("sources")}
     for row in data(name):
