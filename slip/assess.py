@@ -7,6 +7,7 @@ from pathlib import Path
 
 from slip.base.notes import Note
 from slip.clamp.stage import Clamp, clamp
+from slip.friction.partial import Partial
 from slip.friction.stage import Slip, slip
 from slip.joint.joint import Joint
 from slip.pressure.stage import Pressure, pressure
@@ -22,6 +23,7 @@ class Assessment:
     clamp: Clamp
     pressure: Pressure
     slip: Slip
+    partial: Partial
     verdict: Verdict
 
     @property
@@ -50,4 +52,5 @@ def assess(joint: Joint | str | Path) -> Assessment:
     held = clamp(joint)
     pressed = pressure(joint, turning=bool((held.states.load[:, 2] != 0).any()))
     slipping = slip(joint, held, pressed)
-    return Assessment(joint, held, pressed, slipping, verdict(joint, held, pressed, slipping))
+    partial = Partial(joint, held, pressed, slipping)
+    return Assessment(joint, held, pressed, slipping, partial, verdict(joint, held, pressed, slipping, partial))

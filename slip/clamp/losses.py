@@ -68,6 +68,15 @@ def rz_from_rq(Rq: Value) -> Value:
     return 5.6 * Rq
 
 
+@formula("Ra", "Rz/5.5", unit="um", source="practice", basis="practice", valid="machined faces")
+def ra_from_rz(Rz: Value) -> Value:
+    """Mean deviation Ra from the height Rz, same unit, >= 0: the middle of practice, some 4 to 7.
+
+    For the stiffness of a face, whose own factor of two either way covers it; not for embedding. Source practice, practice.
+    """
+    return Rz / 5.5
+
+
 @formula("Rq", "1.25*Ra", unit="um", source="practice", basis="practice", valid="Gaussian heights")
 def rq_from_ra(Ra: Value) -> Value:
     """Root mean square Rq from the mean deviation Ra, same unit (um), >= 0.

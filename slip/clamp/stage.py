@@ -20,6 +20,7 @@ Array = np.ndarray
 TORSION_FRICTION = (
     0.20  # thread friction for the torsion when the file gives none: high, since more is worse (practice)
 )
+FREE_THREAD = 0.01  # a piece of the bolt this near to the minor diameter is thread: its stress area counts
 
 
 @dataclass(frozen=True, eq=False)
@@ -67,13 +68,15 @@ def ledger(joint: Joint, assembly: Assembly, loaded: States, notes: list[Note]) 
     loss, gain = _thermal(joint, assembly, loaded)
     trace.given("thermal loss", "F_th", loss, "N", "statics", "derived")
     trace.given("thermal gain, not credited to the lowest clamp", "F_gain", gain, "N", "statics", "derived")
+    kept = {"F_low": assembly.low, "F_Z": assembly.embedding, "F_R": assembly.relaxation, "F_th": loss}
+    without = trace("lowest clamp without the axial load", working.clamp_without_axial, **kept)
     if joint.axial.credit_compression:
-        values = {"Phi": assembly.share_low, "F_ax": loaded.axial, "Phi_c": assembly.share_high}
+        # A bolt that has lost its clamp stays open: what presses it under the whole load did not hold it under less.
+        pressing = np.where(without > 0, loaded.axial, np.maximum(loaded.axial, 0.0))
+        values = {"Phi": assembly.share_low, "F_ax": pressing, "Phi_c": assembly.share_high}
         relief = trace("axial relief, compression credited", working.axial_relief_credited, **values)
     else:
         relief = trace("axial relief", working.axial_relief, Phi=assembly.share_low, F_ax=loaded.axial)
-    kept = {"F_low": assembly.low, "F_Z": assembly.embedding, "F_R": assembly.relaxation, "F_th": loss}
-    without = trace("lowest clamp without the axial load", working.clamp_without_axial, **kept)
     low = trace("lowest clamp", working.clamp_low, **kept, relief=relief)
     high = trace("highest clamp", working.clamp_high, F_high=assembly.high, F_gain=gain)
     force = trace(
@@ -114,8 +117,10 @@ def _yield_use(joint: Joint, assembly: Assembly, force: Array, trace: Trace, not
     if bolt.grade is None or bolt.thread is None:
         return None
     area = stress_area(bolt.thread, trace)
-    if bolt.shank_diameter is not None:
-        area = min(area, float(screw.round_area(bolt.shank_diameter)))
+    core = screw.minor_diameter(bolt.thread.diameter, bolt.thread.pitch)
+    shanks = [s.diameter for s in bolt.segments if abs(s.diameter - core) > FREE_THREAD * core]
+    shanks += [bolt.shank_diameter] if bolt.shank_diameter is not None else []
+    area = min(area, *(float(screw.round_area(d)) for d in shanks))
     d2 = trace("pitch diameter", screw.pitch_diameter, d=bolt.thread.diameter, P=bolt.thread.pitch)
     given = joint.tightening.thread_friction if isinstance(joint.tightening, Torque) else None
     if given is None:
@@ -154,11 +159,13 @@ def _warnings(joint: Joint, assembly: Assembly, found: Ledger) -> list[Note]:
         elif found.yield_use is not None and float(found.yield_use.max()) > 1:
             text = f"bolt force and tightening torsion use {found.yield_use.max():.3g} of yield"
             warnings.append(Note("yield-use", text, "tightening"))
-    top = joint.plates[0].material if joint.plates else None
-    if top and top.yield_strength and found.bearing_pressure is not None:
-        pressure = float(found.bearing_pressure.max())
-        if pressure > top.yield_strength:
-            text = f"pressure under the head {say(pressure, 'pressure')} is above the yield of {top.name}"
+    faces = {"head": joint.plates[:1], "nut": () if bolt.tapped else joint.plates[1:][-1:]}
+    pressed = [(plate.material, name) for name, plates in faces.items() for plate in plates]
+    yields = [(m.yield_strength, m.name, name) for m, name in pressed if m is not None and m.yield_strength]
+    if yields and found.bearing_pressure is not None:
+        pressure, (limit, material, name) = float(found.bearing_pressure.max()), min(yields)
+        if pressure > limit:
+            text = f"pressure under the {name} {say(pressure, 'pressure')} is above the yield of {material}"
             warnings.append(Note("bearing-pressure", text, "bolt.bearing_diameter"))
     if float(assembly.low.min()) <= 0:
         warnings.append(Note("no-preload", "the lowest assembly preload is zero", "tightening"))

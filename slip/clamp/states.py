@@ -17,6 +17,7 @@ from slip.joint.pattern import Pattern
 
 Array = np.ndarray
 STRAIGHT = 1e-9  # smaller over larger second moment below which the bolts stand in a line
+ROUNDING = 1e-12  # an arm or a moment smaller than this part of what it is the difference of is none
 
 
 @dataclass(frozen=True, eq=False)
@@ -55,7 +56,8 @@ def states(joint: Joint) -> States:
         shear = np.where(each, np.stack([vx, vy]), shear)
         tension = np.where(each, _external(joint.axial, axial, trace), tension)
         arms = joint.pattern.arms
-        turning = (arms[:, 0] * shear[1] - arms[:, 1] * shear[0]).sum(axis=-1)
+        parts = np.stack([arms[:, 0] * shear[1], -arms[:, 1] * shear[0]])
+        turning = _unless_rounding(parts.sum(axis=(0, -1)), np.abs(parts).sum(axis=(0, -1)))
         own = np.stack([shear[0].sum(axis=-1), shear[1].sum(axis=-1), turning], axis=-1)
         total = np.where(each, own, total)
     return States(np.array([i for i, _, _ in listed]), tuple(end for _, end, _ in listed), shear, tension, total, trace)
@@ -77,16 +79,24 @@ def _at_centroid(
     pattern: Pattern, owners: list[Case], loads: list[Load], forces: tuple[Array, Array, Array], trace: Trace
 ) -> tuple[Array, tuple[Array, Array, Array]]:
     """Resultant (S, 3) of shear and turning moment, and the three moments (S, 1), at the centroid in the sliding face."""
-    xc, yc = pattern.centroid
-    x = np.array([[(case.at[0] - xc) if case.at else 0.0] for case in owners])
-    y = np.array([[(case.at[1] - yc) if case.at else 0.0] for case in owners])
+    middle = pattern.centroid
+    at = np.array([case.at or middle for case in owners])
+    x, y = _unless_rounding(at - middle, np.abs(at) + np.abs(pattern.positions).max(axis=0)).T[:, :, None]
     z = np.array([[case.height or 0.0] for case in owners])
     cx, cy, cz = (np.array([[load.moment[axis]] for load in loads]) for axis in range(3))
     vx, vy, axial = forces
     mx = trace("tilting moment about x", working.moment_x, C_x=cx, F_z=axial, y=y, z=z, V_y=vy)
     my = trace("tilting moment about y", working.moment_y, C_y=cy, F_z=axial, x=x, z=z, V_x=vx)
     mz = trace("turning moment at the centroid", working.moment_z, C_z=cz, x=x, V_y=vy, y=y, V_x=vx)
+    parts = ((cx, axial * y, z * vy), (cy, axial * x, z * vx), (cz, x * vy, y * vx))
+    sizes = (sum(np.abs(part) for part in three) for three in parts)
+    mx, my, mz = (_unless_rounding(moment, size) for moment, size in zip((mx, my, mz), sizes, strict=True))
     return np.concatenate([vx, vy, mz], axis=1), (mx, my, mz)
+
+
+def _unless_rounding(difference: Array, size: Array) -> Array:
+    """A difference of values of this size, or 0 where it is no more than their rounding: no moment may come of that."""
+    return np.where(np.abs(difference) <= ROUNDING * size, 0.0, difference)
 
 
 def _shared_shear(pattern: Pattern, vx: Array, vy: Array, mz: Array, trace: Trace) -> Array:
@@ -103,12 +113,12 @@ def _shared_shear(pattern: Pattern, vx: Array, vy: Array, mz: Array, trace: Trac
 
 def _shared_tension(joint: Joint, owners: list[Case], axial: Array, mx: Array, my: Array, trace: Trace) -> Array:
     """External axial force at every bolt, (S, n): equal parts and the tilting moments in principal axes."""
-    arms = joint.pattern.arms
-    second, axes = np.linalg.eigh(arms.T @ arms)
-    u, v = arms @ axes[:, 0], arms @ axes[:, 1]
-    if np.linalg.det(axes) < 0:  # keep u, v right-handed, as x, y are
-        v, axes = -v, axes * np.array([1.0, -1.0])
-    mu, mv = (mx * axes[0, k] + my * axes[1, k] for k in (0, 1))
+    second, axes = _principal(joint.pattern)
+    u, v = axes @ joint.pattern.arms.T
+    mu, mv = (
+        trace(f"tilting moment about the pattern's axis {name}", working.principal_moment, M_x=mx, a_x=ax, M_y=my, a_y=ay)
+        for name, (ax, ay) in zip("uv", axes, strict=True)
+    )
     carried = second > STRAIGHT * max(float(second.max()), 1.0)
     for moment, axis in ((mu, 1), (mv, 0)):  # a moment about u needs arms along v
         if not carried[axis]:
@@ -118,6 +128,19 @@ def _shared_tension(joint: Joint, owners: list[Case], axial: Array, mx: Array, m
     values = {"n": joint.pattern.count, "M_u": mu, "v": v, "sum_v2": sv, "M_v": mv, "u": u, "sum_u2": su}
     tension: Array = trace("external axial force at the bolt", working.bolt_tension, F_z=axial, **values)
     return tension
+
+
+def _principal(pattern: Pattern) -> tuple[Array, Array]:
+    """Second moments (2,) [mm^2] of the pattern along its principal axes u, v, and their directions as rows, (2, 2), right-handed.
+
+    Where x and y are principal axes, also for a round pattern, they are u and v.
+    """
+    tensor = pattern.arms.T @ pattern.arms
+    if abs(tensor[0, 1]) <= STRAIGHT * tensor.trace():
+        return np.diagonal(tensor), np.eye(2)
+    second, axes = np.linalg.eigh(tensor)
+    first = axes[:, 0] if axes[0, 0] >= 0 else -axes[:, 0]
+    return second, np.array([first, [-first[1], first[0]]])
 
 
 def _refuse_tilting(joint: Joint, owners: list[Case], moment: Array, scale: Array) -> None:

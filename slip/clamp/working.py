@@ -52,6 +52,12 @@ def resultant(F_x: Value, F_y: Value) -> Value:
     return np.hypot(F_x, F_y)
 
 
+@formula("M", "M_x*a_x + M_y*a_y", unit="N mm", **STATICS, valid="a_x^2 + a_y^2 = 1")
+def principal_moment(M_x: Value, a_x: Value, M_y: Value, a_y: Value) -> Value:
+    """Part of a tilting moment about the axis with direction a_x, a_y (statics, derived)."""
+    return M_x * a_x + M_y * a_y
+
+
 @formula(
     "F_ax", "F_z/n + M_u*v/sum_v2 - M_v*u/sum_u2", unit="N", **STATICS, valid="rigid plates, turning about the centroid"
 )

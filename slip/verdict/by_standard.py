@@ -7,10 +7,12 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from slip.base.tables import find, number
 from slip.base.trace import Trace
 from slip.clamp.assembly import stress_area
 from slip.clamp.stage import Clamp
 from slip.friction.stage import Slip
+from slip.joint.bolt import Thread
 from slip.joint.joint import Joint, Standard
 from slip.pressure.stage import Pressure
 from slip.verdict.checks import Check, first_least
@@ -125,7 +127,7 @@ def _inputs(
         relaxation=joint.losses.relaxation,
         thermal_loss=float(ledger.thermal_loss[row].max()),
         alternating=joint.cases[states.case[row]].alternating,
-        friction_radius=pressure.patch.friction_radius if pressure.patch else 0.0,
+        friction_radius=pressure.torque_patch.friction_radius if pressure.torque_patch else 0.0,
     )
 
 
@@ -133,6 +135,12 @@ def _one_bolt_without_torque(i: Inputs) -> None:
     """Standards that share shear over bolts have no answer for a torque on a single bolt."""
     if i.joint.pattern.count == 1 and i.moment > 0:
         raise NotComparable("it has no rule for a torque on a single bolt")
+
+
+def _nominal_area(thread: Thread) -> float:
+    """Stress area [mm^2] as rounded in the standard of the thread, which design values are made with; else the exact one."""
+    row = find("threads", "designation", thread.designation)
+    return number(row, "stress_area[mm2]") if row and row["stress_area[mm2]"] else stress_area(thread, Trace())
 
 
 def _slip_factor(i: Inputs, word: str) -> float | str:
@@ -152,7 +160,7 @@ def _en1993(i: Inputs) -> Judgement:
         tension=i.tension,
         n_faces=i.joint.interface.parallel_faces,
         tensile_strength=bolt.grade.tensile_nominal,
-        stress_area=stress_area(bolt.thread, Trace()),
+        stress_area=_nominal_area(bolt.thread),
         slip_factor=_slip_factor(i, "slip_class"),
         category=str(i.need("category")),
         hole=str(i.options.get("hole") or "normal"),
@@ -169,7 +177,7 @@ def _aisc360(i: Inputs) -> Judgement:
         shear=i.shear,
         tension=i.tension,
         n_faces=i.joint.interface.parallel_faces,
-        size=bolt.thread.designation.rsplit(" ", 1)[0] if bolt.thread.unified else bolt.thread.designation,
+        size=bolt.thread.designation,
         group=bolt.grade.name.split("-")[0],
         slip_factor=_slip_factor(i, "surface"),
         method=str(i.need("method")),

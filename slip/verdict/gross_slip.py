@@ -10,7 +10,7 @@ from slip.clamp.stage import Clamp
 from slip.friction.stage import Slip
 from slip.joint.joint import Joint, Required
 from slip.joint.loads import Case
-from slip.verdict.checks import Check, first_least
+from slip.verdict.checks import TIE, Check, first_least
 
 Array = np.ndarray
 LONE = "force alone, never decides"
@@ -18,13 +18,18 @@ LONE = "force alone, never decides"
 
 @dataclass(frozen=True)
 class End:
-    """One end of a case: its checks, and the load state and bolt (indices) that govern the per-bolt factor."""
+    """One end of a case: its checks, and the load states (indices) that govern them; an end has several only when unsigned.
+
+    state and bolt govern the factor per bolt, group_state that of the group; bolt_states holds for every bolt the state
+    with its own smallest factor, of equal ones that with the lowest clamp.
+    """
 
     case: int
     end: str
     state: int
     bolt: int
     group_state: int
+    bolt_states: tuple[int, ...]
     checks: tuple[Check, ...]
 
 
@@ -41,37 +46,36 @@ def judge_end(joint: Joint, clamp: Clamp, slip: Slip, case: int, end: str) -> En
     group, force = int(rows[first_least(group_factor[rows])]), int(rows[first_least(force_factor[rows])])
     sliding = bool(slip.sliding[rows].any())
     name = joint.pattern.names[bolt]
+
+    def check(what: str, bolt: str, safety: Array, growing: Array) -> Check:
+        # Each factor is the smallest of its kind; state and bolt are those of the one held against the requirement.
+        smallest = safety[rows].min(), growing[rows].min()
+        return _check(required, given, end, what, bolt, *smallest, least, sliding)
+
     checks = [
-        _check(
-            required,
-            given,
-            end,
-            "per_bolt",
-            name,
-            slip.bolt_safety[state, bolt],
-            slip.bolt_load_factor[state, bolt],
-            least,
-            sliding,
-        ),
-        _check(
-            required, given, end, "group", "", slip.group.factor[group], slip.group_load_factor[group], least, sliding
-        ),
-        _check(
-            required,
-            given,
-            end,
-            "force_only",
-            "",
-            slip.force_safety[force],
-            slip.force_load_factor[force],
-            least,
-            sliding,
-        ),
+        check("per_bolt", name, slip.bolt_safety, slip.bolt_load_factor),
+        check("group", "", slip.group.factor, slip.group_load_factor),
+        check("force_only", "", slip.force_safety, slip.force_load_factor),
     ]
+    other, way = slip.bolt_safety[rows], "the clamp held"
+    if required.grows == "shear":
+        other, way = slip.bolt_load_factor[rows], "all loads growing"
+    if not checks[0].reason and other[rows == state, bolt] > other.min() * (1 + TIE):
+        first = joint.pattern.names[first_least(other.ravel()) % joint.pattern.count]
+        checks[0] = _with_reason(checks[0], f"with {way} {first} is the first")
     if slip.turning[force]:
         checks[2] = _with_reason(checks[2], f"{LONE}; the moment about the normal is left out")
     separation = _separation(joint, clamp, given, end, rows, least)
-    return End(case, end, state, bolt, group, tuple(checks + separation))
+    own = tuple(
+        _own_state(bolt_factor[rows, i], clamp.ledger.clamp_low[rows, i], rows) for i in range(joint.pattern.count)
+    )
+    return End(case, end, state, bolt, group, own, tuple(checks + separation))
+
+
+def _own_state(factors: Array, clamps: Array, rows: Array) -> int:
+    """The state of one bolt's smallest factor; of factors that tie, that of the lowest clamp."""
+    tied = np.flatnonzero(~(factors > factors[first_least(factors)] * (1 + TIE)))  # also where that is not a number
+    return int(rows[tied[first_least(clamps[tied])]])
 
 
 def _check(

@@ -8,6 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from slip.clamp.stage import Clamp
+from slip.friction.partial import NO_SHEAR, Partial
 from slip.friction.stage import Slip
 from slip.joint.joint import Joint
 from slip.pressure.stage import Pressure
@@ -30,7 +31,7 @@ class Verdict:
     exit_code: int
 
 
-def verdict(joint: Joint, clamp: Clamp, pressure: Pressure, slip: Slip) -> Verdict:
+def verdict(joint: Joint, clamp: Clamp, pressure: Pressure, slip: Slip, partial: Partial) -> Verdict:
     """The verdict stage of a joint."""
     ends: list[End] = []
     standards: dict[tuple[int, str], tuple[Entry, ...]] = {}
@@ -45,6 +46,8 @@ def verdict(joint: Joint, clamp: Clamp, pressure: Pressure, slip: Slip) -> Verdi
             ends.append(judged)
             standards[i, end] = entries
             checks += [*judged.checks, *(entry.check for entry in entries)]
+            if joint.required.true_slip is not None:
+                checks.append(_true_slip(joint, partial, joint.required.true_slip, i, end))
     checks += _not_solved(joint)
     holds = all(check.holds for check in checks if check.decides)
     failed = any(check.solved and not check.holds for check in checks if check.decides)
@@ -62,10 +65,23 @@ def _governing(checks: Sequence[Check]) -> Check:
     return candidates[first_least(reserves)]
 
 
+def _true_slip(joint: Joint, partial: Partial, most: float, case: int, end: str) -> Check:
+    """The largest true slip of the three readings of the face's stiffness against the file's own limit [mm]."""
+    name, found = joint.cases[case].name, partial.of(case, end)
+    reason = partial.reason if found is None else "" if found.reason == NO_SHEAR else found.reason
+    if found is not None and found.wholly:  # there is no end to its slip
+        return Check("true_slip", name, end, "", None, None, None, 0.0, False, True, reason)
+    if found is None or reason:
+        return Check("true_slip", name, end, "", None, None, None, None, False, True, f"not solved: {reason}", solved=False)
+    slip = max((reading.true_slip for reading in found.readings), default=0.0)
+    reserve = most / slip if slip > 0 else float("inf")
+    said = f"{joint.system.say(slip, 'length')} against {joint.system.say(most, 'length')}"
+    return Check("true_slip", name, end, "", None, None, None, reserve, bool(slip <= most), True, said)
+
+
 def _not_solved(joint: Joint) -> list[Check]:
     """Limits that the file sets and no answer can judge yet: they decide, and nobody may take them for held."""
     reasons = {
-        "true_slip": "the limit of true slip is not judged yet" if joint.required.true_slip is not None else "",
         "loosening": "the limit of loosening is not judged yet" if joint.loosening_limit else "",
     }
     return [

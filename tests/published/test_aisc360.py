@@ -34,29 +34,28 @@ def kips(judgement: Judgement) -> Any:
     return judgement.resistance / KIP
 
 
-def test_eleven_bolts_of_the_2005_edition() -> None:
-    """Eleven 3/4 A325, mu .35, T_b 28 kips, one face: 122 kips nominal, 81.2 kips ASD.
-
-    Quimby, Beginner's Guide to the Steel Construction Manual, Ex. 4.1 [published].
-    """
+def test_eleven_bolts_of_the_2005_edition(validate: Any) -> None:
+    """Eleven 3/4 A325, mu .35, T_b 28 kips, one face: 122 kips nominal, 81.2 kips ASD."""
+    book = "Quimby, Beginner's Guide to the Steel Construction Manual, Ex. 4.1"
     nominal = aisc360.nominal_resistance_2005(0.35, D_U, 1.0, 28.0, 1)
-    assert 11 * nominal == pytest.approx(122, abs=0.5)
+    validate(3, "eleven 3/4 A325: nominal", book, "published", "122", 11 * nominal, unit="kips")
     asd = judge(method="ASD", edition="2005", limit="serviceability")
-    assert 11 * kips(asd) == pytest.approx(81.2, abs=0.05)
+    validate(3, "eleven 3/4 A325: ASD", book, "published", "81.2", 11 * kips(asd), unit="kips")
     assert asd.edition == "AISC 360-05"
 
 
-def test_two_faces() -> None:
-    """3/4 A325, mu .30, T_b 28, two faces: 18.98 kips. AISC 360-10 and later [memory, recomputed by hand]."""
-    assert kips(judge(n_faces=2)) == pytest.approx(18.98, abs=0.005)
+RECOMPUTED = "AISC 360-10 and later, J3.8, by hand"
 
 
-@pytest.mark.parametrize(
-    ("size", "printed", "digit"), [("5/8", 6.44, 0.01), ("3/4", 9.49, 0.01), ("7/8", 13.2, 0.1), ("1", 17.3, 0.1)]
-)
-def test_single_face_class_a(size: str, printed: float, digit: float) -> None:
-    """A325, class A, one face, standard holes, kips. AISC 360-10 and later [memory, recomputed by hand]."""
-    assert kips(judge(size=size)) == pytest.approx(printed, abs=0.5 * digit)
+def test_two_faces(validate: Any) -> None:
+    """3/4 A325, mu .30, T_b 28, two faces: 18.98 kips."""
+    validate(10, "3/4 A325, class A, two faces", RECOMPUTED, "memory", "18.98", kips(judge(n_faces=2)), unit="kips")
+
+
+@pytest.mark.parametrize(("size", "printed"), [("5/8", "6.44"), ("3/4", "9.49"), ("7/8", "13.2"), ("1", "17.3")])
+def test_single_face_class_a(size: str, printed: str, validate: Any) -> None:
+    """A325, class A, one face, standard holes."""
+    validate(10, f"{size} A325, class A, one face", RECOMPUTED, "memory", printed, kips(judge(size=size)), unit="kips")
 
 
 STRESS_AREAS = {  # in^2 and mm^2: ASME B1.1 and ISO 898-1 [memory]

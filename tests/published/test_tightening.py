@@ -4,6 +4,7 @@ import pytest
 
 from slip.clamp import thread, tightening
 
+CATALOGUE = "VDI 2230:2001 table as reprinted in a fastener supplier's catalogue, fine threads"
 # d, P, bearing, hole, friction, yield strengths, preloads [kN], torques [N m] for the classes 8.8, 10.9, 12.9
 TABLE = {
     "M10x1.25": (10, 1.25, 14.63, 11, 0.12, (640, 940, 1100), (31.6, 46.4, 54.3), (51, 75, 87)),
@@ -24,21 +25,18 @@ def at_ninety_percent(d, P, mu, R_p):
 
 
 @pytest.mark.parametrize(("d", "P", "d_w", "d_h", "mu", "R_p", "preload", "torque"), CASES)
-def test_preload_at_ninety_percent_of_yield(d, P, d_w, d_h, mu, R_p, preload, torque):
-    """VDI 2230:2001 table of preloads as reprinted in a fastener supplier's catalogue, fine threads; basis published.
-
-    Agreement .3 %: the table is rounded to three digits and its yield strengths to ten MPa.
-    """
+def test_preload_at_ninety_percent_of_yield(d, P, d_w, d_h, mu, R_p, preload, torque, validate):
+    """Agreement .3 %: the table is rounded to three digits and its yield strengths to ten MPa."""
     _, F = at_ninety_percent(d, P, mu, R_p)
-    assert pytest.approx(preload * 1e3, rel=3e-3) == F
+    validate(4, f"M{d}x{P} preload, yield {R_p} MPa", CATALOGUE, "published", preload, F / 1e3, rel=3e-3, unit="kN")
 
 
 @pytest.mark.parametrize(("d", "P", "d_w", "d_h", "mu", "R_p", "preload", "torque"), CASES)
-def test_torque_at_ninety_percent_of_yield(d, P, d_w, d_h, mu, R_p, preload, torque):
-    """VDI 2230:2001 table of torques as reprinted in a supplier's catalogue; basis published. Agreement .7 %."""
+def test_torque_at_ninety_percent_of_yield(d, P, d_w, d_h, mu, R_p, preload, torque, validate):
+    """Agreement .7 %."""
     d2, F = at_ninety_percent(d, P, mu, R_p)
     T = tightening.torque_from_preload(F, P, d2, mu, tightening.bearing_friction_diameter(d_w, d_h), mu)
-    assert pytest.approx(torque * 1e3, rel=7e-3) == T
+    validate(4, f"M{d}x{P} torque, yield {R_p} MPa", CATALOGUE, "published", torque, T / 1e3, rel=7e-3, unit="N m")
 
 
 @pytest.mark.parametrize(

@@ -29,10 +29,10 @@ def vdi(**given: Any) -> Judgement:
     return vdi2230.judge(**(usual | given))
 
 
-def test_vdi_by_hand() -> None:
-    """5.22 kN over one face at mu .18 ask for 29 kN; 59.875 kN are left: S_G 2.0647. VDI 2230 [memory; derived]."""
+def test_vdi_by_hand(validate: Any) -> None:
+    """5.22 kN over one face at mu .18 ask for 29 kN; 59.875 kN are left: S_G 2.0647."""
     left = vdi2230.residual_clamp(78000.0, 0.15, 12500.0, 4500.0, 3000.0)
-    assert left == pytest.approx(59875.0, rel=1e-12)
+    validate(16, "bracket: residual clamp", "VDI 2230 Part 1, by hand", "memory", "59875", left, rel=1e-12, unit="N")
     found = vdi(shear=5220.0, residual_clamp=left, friction=0.18)
     assert found.reserve_factor == pytest.approx(59875 / 29000 / 1.2, rel=1e-12)
     assert found.demand == pytest.approx(1.2 * 29000, rel=1e-12)
@@ -106,14 +106,14 @@ def step(judgement: Judgement, name: str) -> float:
     return next(result for function, _, result in judgement.steps if function.__name__ == name)
 
 
-def test_nasa_by_hand() -> None:
+def test_nasa_by_hand(validate: Any) -> None:
     """n_f 4, 1200 lbf, Gamma .35, 5 % relaxation: 940.5 lbf; mu .2, FS 1.4, FF 1, 300 and 400 lbf: MS +0.414.
 
-    NASA-STD-5020 [memory, recomputed by hand]. The unit of force does not matter.
+    The unit of force does not matter.
     """
-    found = nasa()
-    assert step(found, "preload_low") == pytest.approx(940.5, rel=1e-9)
-    assert step(found, "margin_of_safety") == pytest.approx(0.414, abs=0.0005)
+    found, standard = nasa(), "NASA-STD-5020, by hand"
+    validate(11, "lowest preload", standard, "memory", "940.5", step(found, "preload_low"), rel=1e-9, unit="lbf")
+    validate(11, "margin of safety", standard, "memory", "0.414", step(found, "margin_of_safety"))
     assert found.reserve_factor == pytest.approx(1.0 + step(found, "margin_of_safety"), rel=1e-12)
 
 
