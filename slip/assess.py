@@ -2,13 +2,16 @@
 
 from __future__ import annotations
 
+from collections.abc import Mapping
 from dataclasses import dataclass
 from pathlib import Path
+from typing import TYPE_CHECKING, Literal
 
 from slip.base.notes import Note
 from slip.clamp.stage import Clamp, clamp
 from slip.friction.partial import Partial
 from slip.friction.stage import Slip, slip
+from slip.joint.contact import PressedContact
 from slip.joint.joint import Joint
 from slip.pressure.stage import Pressure, pressure
 from slip.read.build import read
@@ -25,6 +28,7 @@ class Assessment:
     slip: Slip
     partial: Partial
     verdict: Verdict
+    pressed: Literal[False] = False
 
     @property
     def holds(self) -> bool:
@@ -42,13 +46,44 @@ class Assessment:
         return (*self.joint.warnings, *self.clamp.warnings)
 
 
-def assess(joint: Joint | str | Path) -> Assessment:
-    """The assessment of a joint, or of the joint file at a path.
+if TYPE_CHECKING:
+    from slip.friction.pressed import PressedSlip
+
+
+@dataclass(frozen=True, eq=False)
+class PressedAssessment:
+    """What was found for a pressed contact: partial slip by case and end, the verdict."""
+
+    joint: PressedContact
+    slips: Mapping[tuple[int, str], PressedSlip]
+    verdict: Verdict
+    pressed: Literal[True] = True
+
+    @property
+    def holds(self) -> bool:
+        """Whether every check that decides holds."""
+        return self.verdict.holds
+
+
+def assess(joint: Joint | PressedContact | str | Path) -> Assessment | PressedAssessment:
+    """The assessment of a joint or a pressed contact, or of the joint file at a path.
 
     Raises slip.base.errors.Problems for a wrong file, NotConverged where a numerical answer could not be proven.
     """
-    if not isinstance(joint, Joint):
+    if isinstance(joint, (str, Path)):
         joint = read(joint)
+    return _pressed(joint) if isinstance(joint, PressedContact) else _bolted(joint)
+
+
+def _pressed(contact: PressedContact) -> PressedAssessment:
+    from slip.friction.pressed import pressed_slip  # brings SciPy's transforms; only a contact pays for them
+    from slip.verdict.pressed import pressed_verdict  # likewise
+
+    slips = {(i, end): pressed_slip(contact, case, end) for i, case in enumerate(contact.cases) for end, _ in case.ends}
+    return PressedAssessment(contact, slips, pressed_verdict(contact, slips))
+
+
+def _bolted(joint: Joint) -> Assessment:
     held = clamp(joint)
     pressed = pressure(joint, turning=bool((held.states.load[:, 2] != 0).any()))
     slipping = slip(joint, held, pressed)

@@ -3,43 +3,71 @@
 from __future__ import annotations
 
 import argparse
+import gc
 import os
 import sys
 from collections.abc import Callable, Sequence
 from pathlib import Path
+from typing import TYPE_CHECKING, NamedTuple
 
 import slip
-from slip.base.errors import InputError, Problems, SlipError
+from slip.base.errors import InputError, NotConverged, Problems, SlipError
 from slip.base.units import SYSTEMS, System
 
-INPUT_WRONG, FAULT, INTERRUPTED = 2, 4, 130
+if TYPE_CHECKING:
+    from slip.assess import Assessment, PressedAssessment
+
+INPUT_WRONG, NOT_SOLVED, FAULT, INTERRUPTED = 2, 3, 4, 130
+
+
+class Outcome(NamedTuple):
+    """What a command says on standard output, and its exit code."""
+
+    text: str
+    code: int = 0
 
 
 def main(arguments: Sequence[str] | None = None) -> int:
     """Run one command; returns the exit code of the contract."""
-    options = _parser().parse_args(arguments)
+    arguments = sys.argv[1:] if arguments is None else list(arguments)
+    options = _parser(arguments).parse_args(arguments)
+    as_json = getattr(options, "json", False)
     try:
-        code = int(options.run(options))
-        sys.stdout.flush()
-        return code
-    except Problems as problems:
-        return _say_problems(problems, getattr(options, "json", False))
+        return _say(options.run(options), as_json)
+    except (Problems, NotConverged) as error:
+        code = INPUT_WRONG if isinstance(error, Problems) else NOT_SOLVED
+        return _say_error(error, code, as_json)
     except SlipError as error:
         print(f"slip: {error}", file=sys.stderr)
         return FAULT
     except KeyboardInterrupt:
         print("slip: interrupted; nothing was written", file=sys.stderr)
         return INTERRUPTED
+    except Exception as error:  # a fault of ours must not look like one of the input
+        said = f"a fault of the program, not of your input: {type(error).__name__}: {error} ({_place(error)})"
+        print(f"slip: {said}", file=sys.stderr)
+        return FAULT
+
+
+def _say(outcome: Outcome, as_json: bool) -> int:
+    """Print what a command says; the exit code is the command's own, also when nobody reads to the end."""
+    if hasattr(sys.stdout, "reconfigure"):  # a terminal that lacks a character shows its code; JSON is UTF-8 everywhere
+        sys.stdout.reconfigure(errors="backslashreplace", **({"encoding": "utf-8"} if as_json else {}))
+    try:
+        print(outcome.text, end="" if outcome.text.endswith("\n") else "\n", flush=True)
     except BrokenPipeError:  # the reader of a pipe has left; there is nobody to tell
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
-        return 0
-    except Exception as error:  # a fault of ours must not look like one of the input
-        place = _place(error)
-        print(
-            f"slip: a fault of the program, not of your input: {type(error).__name__}: {error} ({place})",
-            file=sys.stderr,
-        )
-        return FAULT
+    return outcome.code
+
+
+def _say_error(error: Problems | NotConverged, code: int, as_json: bool) -> int:
+    if as_json:
+        from slip.report.machine import errors_text
+
+        return _say(Outcome(errors_text(error), code), as_json)
+    for one in error.errors if isinstance(error, Problems) else (error,):
+        print(f"slip: {one}", file=sys.stderr)
+    return code
 
 
 def _place(error: BaseException) -> str:
@@ -50,102 +78,81 @@ def _place(error: BaseException) -> str:
     return f"{Path(trace.tb_frame.f_code.co_filename).name}, line {trace.tb_lineno}" if trace else "unknown place"
 
 
-def _say_problems(problems: Problems, as_json: bool) -> int:
-    if as_json:
-        from slip.report.machine import errors_text
-
-        print(errors_text(problems))
-    else:
-        for error in problems.errors:
-            print(f"slip: {error}", file=sys.stderr)
-    return INPUT_WRONG
+# the commands
 
 
-def _parser() -> argparse.ArgumentParser:
-    parser = argparse.ArgumentParser(
-        prog="slip",
-        description="Proves that a bolted, friction-clamped joint does not slip, with every number traceable.",
-        epilog="Exit: 0 holds, 1 fails, 2 input wrong, 3 not solved, 4 fault of the program, 130 interrupted.",
-    )
-    parser.add_argument("--version", action="version", version=f"slip {slip.__version__}")
-    commands = parser.add_subparsers(dest="command", required=True, metavar="COMMAND")
-
-    def command(name: str, run: Callable[[argparse.Namespace], int], help: str) -> argparse.ArgumentParser:
-        sub = commands.add_parser(name, help=help, description=help)
-        sub.set_defaults(run=run)
-        return sub
-
-    new = command("new", _new, "write a commented joint file; never over an existing one")
-    new.add_argument("path", metavar="PATH")
-    new.add_argument("--kind", choices=("bolted", "lap", "contact"), default="bolted", help="what is pressed together")
-    check = command("check", _check, "does the joint slip?")
-    check.add_argument("file", metavar="FILE")
-    check.add_argument("--json", action="store_true", help="the result for programs, on standard output")
-    check.add_argument("--report", metavar="OUT.html", help="write one self-contained page")
-    check.add_argument("--units", choices=tuple(SYSTEMS), help="units of the result; default those of the file")
-    explain = command("explain", _explain, "every number with formula, numbers put in, source and basis")
-    explain.add_argument("file", metavar="FILE")
-    explain.add_argument("case", metavar="CASE", nargs="?", help="default: the governing case")
-    explain.add_argument("bolt", metavar="BOLT", nargs="?", help="default: the governing bolt")
-    explain.add_argument("--json", action="store_true", help="the lines for programs, on standard output")
-    tables = command("tables", _tables, "the data with source and basis")
-    tables.add_argument("word", metavar="WORD", nargs="?", default="", help="rows that hold the word")
-    return parser
+def _assess(path: str) -> Assessment | PressedAssessment:
+    """The assessment of a joint file. Nothing is garbage while the modules load; looking for it costs a twentieth of the start."""
+    collecting = gc.isenabled()
+    gc.disable()
+    try:
+        from slip.assess import assess
+    finally:
+        if collecting:
+            gc.enable()
+    return assess(path)
 
 
-def _units(options: argparse.Namespace) -> System | None:
-    return SYSTEMS[options.units] if options.units else None
-
-
-def _check(options: argparse.Namespace) -> int:
-    from slip.assess import assess
-
-    assessment = assess(options.file)
+def _check(options: argparse.Namespace) -> Outcome:
+    assessment = _assess(options.file)
+    if assessment.pressed:
+        return _check_pressed(assessment, options)
     if options.report:
         from slip.report.page import page
 
         _write(Path(options.report), page(assessment, _units(options)), source=Path(options.file))
+    code = assessment.verdict.exit_code
     if options.json:
         from slip.report.machine import text
 
-        print(text(assessment, _units(options)))
-    else:
-        from slip.report.terminal import check_text
+        return Outcome(text(assessment, _units(options)), code)
+    from slip.report.terminal import check_text
 
-        print(check_text(assessment, _units(options)), end="")
-    return assessment.verdict.exit_code
+    return Outcome(check_text(assessment, _units(options)), code)
 
 
-def _explain(options: argparse.Namespace) -> int:
-    from slip.assess import assess
+def _check_pressed(assessment: PressedAssessment, options: argparse.Namespace) -> Outcome:
+    if options.report:
+        raise _only_bolted("--report", options.file)
+    from slip.report.pressed import pressed_json, pressed_text
+
+    code = assessment.verdict.exit_code
+    said = pressed_json if options.json else pressed_text
+    return Outcome(said(assessment, _units(options)), code)
+
+
+def _only_bolted(what: str, file: str) -> Problems:
+    remedy = "slip check FILE --json has every number of a contact"
+    return Problems([InputError("contact-not-yet", what, "a pressed contact", "a joint with bolts", remedy, file)])
+
+
+def _explain(options: argparse.Namespace) -> Outcome:
+    assessment = _assess(options.file)
+    if assessment.pressed:
+        raise _only_bolted("explain", options.file)
     from slip.report.equations import explain
 
-    assessment = assess(options.file)
     explanation = explain(assessment, options.case, options.bolt)
     if options.json:
         from slip.report.machine import explanation_text
 
-        print(explanation_text(explanation))
-    else:
-        from slip.report.terminal import explain_text
+        return Outcome(explanation_text(explanation))
+    from slip.report.explained import explain_text
 
-        print(explain_text(explanation, assessment.joint.system), end="")
-    return 0
+    return Outcome(explain_text(explanation, assessment))
 
 
-def _tables(options: argparse.Namespace) -> int:
-    from slip.report.terminal import tables_text
+def _tables(options: argparse.Namespace) -> Outcome:
+    from slip.report.listing import tables_text
 
     found = tables_text(options.word)
     if not found:
-        raise Problems(
-            [InputError("no-row", "WORD", options.word, "a word of some table", "slip tables lists the tables")]
-        )
-    print(found, end="")
-    return 0
+        remedy = "slip tables lists the tables"
+        raise Problems([InputError("no-row", "WORD", options.word, "a word of some table", remedy)])
+    return Outcome(found)
 
 
-def _new(options: argparse.Namespace) -> int:
+def _new(options: argparse.Namespace) -> Outcome:
     from slip.read.template import template
 
     text = template(options.kind)
@@ -158,8 +165,11 @@ def _new(options: argparse.Namespace) -> int:
         ) from None
     except OSError as error:
         raise _not_written(options.path, error) from None
-    print(f"wrote {options.path}; next: slip check {options.path}")
-    return 0
+    return Outcome(f"wrote {options.path}; next: slip check {options.path}")
+
+
+def _units(options: argparse.Namespace) -> System | None:
+    return SYSTEMS[options.units] if options.units else None
 
 
 def _write(path: Path, text: str, source: Path) -> None:
@@ -183,3 +193,73 @@ def _not_written(path: str, error: OSError) -> Problems:
     return Problems(
         [InputError("not-written", "", reason, "a path that can be written", "check folder and permissions", path)]
     )
+
+
+# the command line
+
+
+def _new_options(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("path", metavar="PATH")
+    parser.add_argument(
+        "--kind", choices=("bolted", "lap", "contact"), default="bolted", help="what is pressed together"
+    )
+
+
+def _check_options(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("file", metavar="FILE")
+    parser.add_argument("--json", action="store_true", help="the result for programs, on standard output")
+    parser.add_argument("--report", metavar="OUT.html", help="write one self-contained page")
+    parser.add_argument("--units", choices=tuple(SYSTEMS), help="units of the result; default those of the file")
+
+
+def _explain_options(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("file", metavar="FILE")
+    parser.add_argument("case", metavar="CASE", nargs="?", help="default: the governing case")
+    parser.add_argument("bolt", metavar="BOLT", nargs="?", help="default: the governing bolt")
+    parser.add_argument("--json", action="store_true", help="the lines for programs, on standard output")
+
+
+def _tables_options(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("word", metavar="WORD", nargs="?", default="", help="rows that hold the word")
+
+
+class Command(NamedTuple):
+    """What runs, the line that describes it, and what adds its options to a parser."""
+
+    run: Callable[[argparse.Namespace], Outcome]
+    help: str
+    options: Callable[[argparse.ArgumentParser], None]
+
+
+COMMANDS = {
+    "new": Command(_new, "write a commented joint file; never over an existing one", _new_options),
+    "check": Command(_check, "does the joint slip?", _check_options),
+    "explain": Command(_explain, "every number with formula, numbers put in, source and basis", _explain_options),
+    "tables": Command(_tables, "the data with source and basis", _tables_options),
+}
+
+
+class _Help(argparse.HelpFormatter):
+    """Help at a fixed width: asking for the terminal's loads the archive libraries at every start."""
+
+    def __init__(self, prog: str) -> None:
+        super().__init__(prog, width=78)
+
+
+def _parser(arguments: Sequence[str]) -> argparse.ArgumentParser:
+    """The parser of the command that is asked for, of all where none is: building the others costs at every start."""
+    parser = argparse.ArgumentParser(
+        prog="slip",
+        description="Proves that a bolted, friction-clamped joint does not slip, with every number traceable.",
+        epilog="Exit: 0 holds, 1 fails, 2 input wrong, 3 not solved, 4 fault of the program, 130 interrupted.",
+        formatter_class=_Help,
+    )
+    parser.add_argument("--version", action="version", version=f"slip {slip.__version__}")
+    commands = parser.add_subparsers(dest="command", required=True, metavar="COMMAND", prog="slip")
+    asked = arguments[0] if arguments and arguments[0] in COMMANDS else None
+    for name, command in COMMANDS.items():
+        if asked is None or name == asked:
+            sub = commands.add_parser(name, help=command.help, description=command.help, formatter_class=_Help)
+            sub.set_defaults(run=command.run)
+            command.options(sub)
+    return parser

@@ -47,9 +47,13 @@ class Trace:
         )
         return result
 
-    def products(self, name: str, symbol: str, first: Sequence[Any], second: Sequence[Any], source: str, basis: str) -> Any:
+    def products(
+        self, name: str, symbol: str, first: Sequence[Any], second: Sequence[Any], source: str, basis: str
+    ) -> Any:
         """Sum of products first_i second_i, recorded as one step."""
-        values = {f"{letter}_{i + 1}": item for letter, items in (("F", first), ("s", second)) for i, item in enumerate(items)}
+        values = {
+            f"{letter}_{i + 1}": item for letter, items in (("F", first), ("s", second)) for i, item in enumerate(items)
+        }
         text = " + ".join(f"F_{i + 1}*s_{i + 1}" for i in range(len(first)))
         result = sum(a * b for a, b in zip(first, second, strict=True))
         self.steps.append(Step(name, Formula(symbol, text, "", source, basis, ""), values, result, source, basis))

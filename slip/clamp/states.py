@@ -116,7 +116,9 @@ def _shared_tension(joint: Joint, owners: list[Case], axial: Array, mx: Array, m
     second, axes = _principal(joint.pattern)
     u, v = axes @ joint.pattern.arms.T
     mu, mv = (
-        trace(f"tilting moment about the pattern's axis {name}", working.principal_moment, M_x=mx, a_x=ax, M_y=my, a_y=ay)
+        trace(
+            f"tilting moment about the pattern's axis {name}", working.principal_moment, M_x=mx, a_x=ax, M_y=my, a_y=ay
+        )
         for name, (ax, ay) in zip("uv", axes, strict=True)
     )
     carried = second > STRAIGHT * max(float(second.max()), 1.0)

@@ -13,7 +13,7 @@ from slip.friction import law
 from slip.friction.march.limit import Limit, limit
 from slip.friction.march.relief import limit_with_relief, relieved_factor
 from slip.joint.joint import Joint
-from slip.pressure.stage import Patch, Pressure
+from slip.pressure.stage import Pressure
 
 Array = np.ndarray
 
@@ -24,6 +24,7 @@ class Slip:
 
     per bolt: shear [N], bolt_safety, bolt_load_factor, each (S, n); group and force only: (S,). sliding: whether the
     state has any shear, (S,); turning: whether it has a moment about the normal. group: the held limit with its proof.
+    The three traces are apart, since each of the three answers may come from another load state of an end.
     """
 
     shear: Array
@@ -36,22 +37,27 @@ class Slip:
     sliding: Array
     turning: Array
     trace: Trace
+    group_trace: Trace
+    force_trace: Trace
 
 
 def slip(joint: Joint, clamp: Clamp, pressure: Pressure) -> Slip:
     """The friction stage of a joint at the lowest friction and the lowest clamp."""
-    trace, ledger, states = Trace(), clamp.ledger, clamp.states
+    trace, group_trace, force_trace = Trace(), Trace(), Trace()
+    ledger, states = clamp.ledger, clamp.states
     mu, m = joint.interface.friction_low, joint.interface.parallel_faces
     shear = trace("shear of the bolt", resultant, F_x=states.shear[0], F_y=states.shear[1])
     held = trace("friction capacity", law.capacity, mu=mu, m=m, clamp=ledger.clamp_low)
     bound, relief = mu * m * ledger.clamp_without_axial, mu * m * ledger.relief
-    group, group_growing = _group(joint, held, bound, relief, states.load, pressure.patch, trace)
+    group, group_growing = _group(joint, held, bound, relief, states.load, pressure, group_trace)
     force = np.hypot(states.load[:, 0], states.load[:, 1])
-    columns = {f"F_{i + 1}": held[:, i : i + 1] for i in range(joint.pattern.count)}
-    total = trace.total("capacity of all bolts together", "sum_F", columns, "N", "statics", "derived")
-    force_safety = trace("safety for the force alone, clamp held", law.safety, F_max=total, F_s=force[:, None])
-    if pressure.patch is not None:  # one bolt under torque: the limit of its patch is its first slip
-        safety, growing = group.factor[:, None], group_growing[:, None]
+    force_safety, force_growing = _force_only(held, bound, relief, force, force_trace)
+    if pressure.torque_patch is not None:  # one bolt under torque: the limit of its patch is its first slip
+        safety, growing, basis = group.factor[:, None], group_growing[:, None], pressure.basis
+        radius = pressure.torque_patch.friction_radius
+        trace.given("friction radius of the bolt's pressure patch", "r_eff", radius, "mm", "plate_model", basis)
+        trace.given("safety of the bolt on its pressure patch, clamp held", "S", safety, "", "limit", basis)
+        trace.given("load factor of the bolt on its pressure patch, all loads", "S_all", growing, "", "limit", basis)
     else:
         closed = np.where(ledger.open, 0.0, 1.0)
         values = {"mu": mu, "m": m, "clamp_0": ledger.clamp_without_axial, "F_s": shear, "relief": ledger.relief}
@@ -64,40 +70,55 @@ def slip(joint: Joint, clamp: Clamp, pressure: Pressure) -> Slip:
         bolt_load_factor=growing,
         group=group,
         group_load_factor=group_growing,
-        force_safety=force_safety[:, 0],
-        force_load_factor=_force_only(bound, relief, force),
+        force_safety=force_safety,
+        force_load_factor=force_growing,
         sliding=sliding,
         turning=np.abs(states.load[:, 2]) > 0,
         trace=trace,
+        group_trace=group_trace,
+        force_trace=force_trace,
     )
 
 
 def _group(
-    joint: Joint, held: Array, bound: Array, relief: Array, load: Array, patch: Patch | None, trace: Trace
+    joint: Joint, held: Array, bound: Array, relief: Array, load: Array, pressure: Pressure, trace: Trace
 ) -> tuple[Limit, Array]:
     """Limit of all bolts together with the clamp held, and the factor at which the whole load grows, (S,)."""
     points, shares = joint.pattern.arms, np.ones(joint.pattern.count)
+    patch = pressure.torque_patch
     if patch is not None:
         points, shares = patch.points, patch.shares
     at_given = limit(held * shares, points, load)
     growing = limit_with_relief(bound * shares, relief * shares, points, load)
-    factor = np.where(at_given.factor == 0, 0.0, growing.factor)
+    stuck = at_given.factor == 0  # what is closed at the given load cannot carry any part of it
+    factor = np.where(stuck, 0.0, growing.factor)
     names = ("safety of the group, clamp held", "load factor of the group, all loads")
     if patch is not None:
-        trace.given(f"{names[0]} (pressure patch)", "S_group", at_given.factor[:, None], "", "limit", patch.basis)
-        trace.given(f"{names[1]} (pressure patch)", "S_group_all", factor[:, None], "", "limit", patch.basis)
-    else:
-        left = np.maximum(bound - np.where(np.isfinite(factor), factor, 0.0)[:, None] * relief, 0.0)
-        for name, symbol, forces, motion in (
-            (names[0], "S_group", held, at_given.motion),
-            (names[1], "S_group_all", left, growing.motion),
-        ):
-            travel = _travel(motion, points)
-            parts = [[values[:, i : i + 1] for i in range(joint.pattern.count)] for values in (forces, travel)]
-            trace.products(
-                f"{name}: work of the bolts on the slip motion of unit load work", symbol, *parts, "limit", "derived"
-            )
+        trace.given(f"{names[0]} (pressure patch)", "S_group", at_given.factor[:, None], "", "limit", pressure.basis)
+        trace.given(f"{names[1]} (pressure patch)", "S_group_all", factor[:, None], "", "limit", pressure.basis)
+        return at_given, factor
+    left = np.where(stuck[:, None], held, _left(bound, relief, factor))
+    grown = np.where(stuck[:, None], at_given.motion, growing.motion)
+    for name, symbol, forces, motion, found in (
+        (names[0], "S_group", held, at_given.motion, at_given.factor),
+        (names[1], "S_group_all", left, grown, factor),
+    ):
+        # no motion bounds an infinite factor: NaN keeps its line out of the explanation
+        travel = np.where(np.isfinite(found)[:, None], _travel(motion, points), np.nan)
+        said = f"{name}: work of the bolts on the slip motion of unit load work"
+        trace.products(said, symbol, _columns(forces), _columns(travel), "limit", "derived")
     return at_given, factor
+
+
+def _left(bound: Array, relief: Array, factor: Array) -> Array:
+    """Capacity of every bolt when the whole load has grown by a factor, (S, n); infinite where the factor is."""
+    finite = np.isfinite(factor)[:, None]
+    return np.where(finite, np.maximum(bound - np.where(finite, factor[:, None], 0.0) * relief, 0.0), np.inf)
+
+
+def _columns(values: Array) -> list[Array]:
+    """Values (S, n) as n columns that broadcast over the bolts."""
+    return [values[:, i : i + 1] for i in range(values.shape[1])]
 
 
 def _travel(motion: Array, points: Array) -> Array:
@@ -105,11 +126,22 @@ def _travel(motion: Array, points: Array) -> Array:
     return np.hypot(motion[:, 0:1] - motion[:, 2:] * points[:, 1], motion[:, 1:2] + motion[:, 2:] * points[:, 0])
 
 
-def _force_only(bound: Array, relief: Array, force: Array) -> Array:
-    """Factor on the whole load at which all capacities together equal the resultant force, (S,); infinite without force."""
-    with np.errstate(divide="ignore"):
-        slide = np.where(force > 0, 1 / force, np.inf)[:, None] * np.ones_like(bound)
+def _force_only(held: Array, bound: Array, relief: Array, force: Array, trace: Trace) -> tuple[Array, Array]:
+    """Factors at which all capacities together equal the resultant force, clamp held and whole load growing, (S,)."""
+    total = _total("capacity of all bolts together", held, trace)
+    safety = trace("safety for the force alone, clamp held", law.safety, F_max=total, F_s=force[:, None])
     factor = np.full(force.shape, np.inf)
     moving = force > 0
-    factor[moving] = relieved_factor(bound[moving], relief[moving], slide[moving])
-    return factor
+    slide = np.ones_like(bound[moving]) / force[moving, None]
+    factor[moving] = relieved_factor(bound[moving], relief[moving], slide)
+    factor = np.where(total[:, 0] > 0, factor, 0.0)  # all bolts open at the given load: as the safety
+    left = np.where(total > 0, _left(bound, relief, factor), 0.0)
+    total = _total("capacity of all bolts together, all loads grown", left, trace)
+    trace("load factor for the force alone, all loads", law.safety, F_max=total, F_s=force[:, None])
+    return safety[:, 0], factor
+
+
+def _total(name: str, forces: Array, trace: Trace) -> Array:
+    """Sum over the bolts, (S, 1), recorded."""
+    terms = {f"F_{i + 1}": column for i, column in enumerate(_columns(forces))}
+    return np.asarray(trace.total(name, "sum_F", terms, "N", "statics", "derived"))

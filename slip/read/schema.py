@@ -332,13 +332,13 @@ KEYS: tuple[Key, ...] = (
     Key("case[]", "cycles", "number", "number of cycles", least=0, above=True, later=True),
     Key("case[]", "thermal", "force", "loss that overrides [losses] thermal", least=0),
     # pressed contact
-    Key("contact", "shape", "choice", "profile", choices=("sphere", "cylinder", "flat", "rounded flat"), later=True),
-    _length("contact", "radius", "radius of the profile or of its edge", later=True),
-    _length("contact", "flat_width", "width of the flat part", later=True),
-    _length("contact", "length", "length of a cylinder or strip", later=True),
-    Key("contact", "normal_force", "force", "force that presses", least=0, above=True, later=True),
-    Key("contact", "bulk_stress", "pressure", "tension in one body along the shear", later=True),
-    Key("body[]", "material", "material", "of the body", later=True),
+    Key("contact", "shape", "choice", "profile", choices=("sphere", "cylinder", "flat", "rounded flat")),
+    _length("contact", "radius", "radius of the profile or of its edge"),
+    _length("contact", "flat_width", "width of the flat part"),
+    _length("contact", "length", "length of a cylinder or strip"),
+    Key("contact", "normal_force", "force", "force that presses", least=0, above=True),
+    Key("contact", "bulk_stress", "pressure", "tension in one body along the shear"),
+    Key("body[]", "material", "material", "of the body"),
     # finite elements
     Key(
         "finite_elements",

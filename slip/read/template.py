@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
-from slip.base.errors import InputError, Problems
 from slip.base.units import KINDS, NONE, example
 from slip.read.schema import BY_TABLE, KEYS, TABLES, Key
 
@@ -56,7 +55,27 @@ LAP = BOLTED | {
     "case[].moment": ["[0, 0, 0]", "[0, 0, 0]"],
 }
 del LAP["pattern.grid"]
-KINDS_OF_FILE = {"bolted": BOLTED, "lap": LAP}
+CONTACT: Values = {
+    "format": "1",
+    "title": '"Rest pad of a fixture"',
+    "units": '"N mm"',
+    "interface.friction": "[0.15, 0.25]",
+    "interface.friction_source": '"replace this by your test or source"',
+    "required.static": "1.2",
+    "required.alternating": "1.8",
+    "case[].name": ['"clamped"', '"rocking"'],
+    "case[].shear": ["[40, 0]", "[25, 0]"],
+    "case[].kind": ['"static"', '"alternating"'],
+    "case[].ratio": ["", "-1"],
+    "contact.shape": '"sphere"',
+    "contact.radius": "10",
+    "contact.normal_force": "400",
+    "body[].material": ['"steel"', '"steel"'],
+}
+KINDS_OF_FILE: dict[str, Values] = {"bolted": BOLTED, "lap": LAP, "contact": CONTACT}
+CONTACT_ONLY = ("contact", "body[]")
+BOLTED_ONLY = ("bolt", "bolt.segment[]", "tightening", "losses", "plate[]", "pattern", "axial", "standard[]")
+BOLTED_ONLY += ("finite_elements", "fretting", "loosening", "scatter", "table")
 # Commented keys whose kind alone would suggest an absurd value.
 SAMPLES = {
     "bolt.yield_strength": '"640 MPa"',
@@ -89,15 +108,12 @@ WIDTH = 46  # column of the remarks
 
 
 def template(kind: str) -> str:
-    """Text of a commented joint file. Raises Problems for a kind that is not assessed yet."""
-    if kind not in KINDS_OF_FILE:
-        known = ", ".join(KINDS_OF_FILE)
-        raise Problems(
-            [InputError("contact-not-yet", "--kind", kind, f"one of {known}", "pressed contacts are not assessed yet")]
-        )
+    """Text of a commented joint file of a kind in KINDS_OF_FILE; a contact's file has only the tables that speak of one."""
     values = KINDS_OF_FILE[kind]
     lines = ["# A joint file. Lines with # are keys that may be given as well; an unknown key is an error.", ""]
     for table, what in TABLES.items():
+        if table in (BOLTED_ONLY if kind == "contact" else CONTACT_ONLY):
+            continue
         lines += _table(table, what, values) if table else _keys("", values, 0)
         lines.append("")
     return "\n".join(lines)

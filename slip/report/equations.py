@@ -11,7 +11,7 @@ import numpy as np
 
 from slip.assess import Assessment
 from slip.base.errors import InputError, Problems
-from slip.base.tables import Row
+from slip.base.tables import Row, table
 from slip.base.trace import Step
 from slip.joint.joint import Joint
 from slip.read import library
@@ -124,9 +124,10 @@ def _inputs(joint: Joint) -> Iterator[Line]:
         return Line("inputs", name, symbol, "value", shown, value, unit, *origin, "")
 
     face, bolt = joint.interface, joint.bolt
-    yield line(
-        "lowest friction of the sliding face", "mu", face.friction_low, "", (face.friction_source, face.friction_basis)
-    )
+    name, origin = "lowest friction of the sliding face", (face.friction_source, face.friction_basis)
+    if row := _friction_row(face.friction_source):
+        name, origin = f"{name}, {face.friction_source}", (row["source"], row["basis"])
+    yield line(name, "mu", face.friction_low, "", origin)
     if bolt.thread:
         origin = bolt.thread.source, bolt.thread.basis
         yield line(f"thread {bolt.thread.designation}, diameter", "d", bolt.thread.diameter, "mm", origin)
@@ -149,6 +150,11 @@ def _inputs(joint: Joint) -> Iterator[Line]:
         materials = {"bolt and washers": bolt.material} | {p.name: p.material for p in joint.plates if p.material}
         for name, m in materials.items():
             yield line(f"modulus of {name}, {m.name}", "E", m.youngs_modulus, "MPa", (m.source, m.basis))
+
+
+def _friction_row(words: str) -> Row | None:
+    """The row of the friction table that a joint names as its source, None where the file says another."""
+    return next((row for row in table("friction") if f"{row['pair']}, {row['lubrication']}" == words), None)
 
 
 def _origin(joint: Joint, key: str, row: Row | None) -> tuple[str, str]:

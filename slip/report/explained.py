@@ -6,8 +6,9 @@ import textwrap
 
 from slip.assess import Assessment
 from slip.base.formulas import citation
+from slip.report.checked import WIDTH
 from slip.report.equations import Explanation
-from slip.report.terminal import WIDTH, end_of, verdict_lines
+from slip.report.terminal import end_of, verdict_lines
 from slip.report.words import plain, wrapped
 
 

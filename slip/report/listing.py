@@ -13,21 +13,23 @@ SOURCES = "sources"
 def tables_text(word: str = "") -> str:
     """Rows of the data tables whose name or any cell holds the word; without a word the list of tables; '' when none does."""
     wanted = word.strip().casefold()
-    data = [name for name in names() if name == SOURCES or "source" in columns(name)]
+    data = [name for name in names() if name == SOURCES or (table(name) and "source" in columns(name))]
     if not wanted:
-        lines = ["slip tables WORD prints the rows that hold the word. Tables and their rows:"]
-        return "\n".join([*lines, *(f"  {name:<22}{len(table(name)):>5}" for name in data)]) + "\n"
-    lines, keys = [], dict[str, None]()
+        first = "slip tables WORD prints the rows that hold the word. Tables and their rows:"
+        return "\n".join([first, *(f"  {name:<22}{len(table(name)):>5}" for name in data)]) + "\n"
+    lines: list[str] = []
+    keys: set[str] = set()
     for name in data:
         rows = [row for row in table(name) if wanted in name.casefold() or _holds(row, wanted)]
-        if name == SOURCES:
-            keys |= dict.fromkeys(row["key"] for row in rows)
-        elif rows:
+        if rows and name != SOURCES:
             lines += [name.upper(), *_rows(name, rows), ""]
-            keys |= dict.fromkeys(key for row in rows for key in row.get("source", "").split(";"))
-    cited = [row for row in table(SOURCES) if row["key"] in keys]
+            keys |= {key for row in rows for key in row["source"].split(";")}
+    # a word of a citation alone is an answer only where no row has it
+    cited = [
+        row for row in table(SOURCES) if row["key"] in keys or wanted == SOURCES or (not lines and _holds(row, wanted))
+    ]
     if cited:
-        lines.append("SOURCES")
+        lines.append(SOURCES.upper())
         for row in cited:
             lines += wrapped(f"{row['key']}: {row['citation']}", WIDTH, "", "    ")
     return "\n".join(line.rstrip() for line in lines) + "\n" if lines else ""

@@ -14,7 +14,9 @@ from slip.assess import Assessment
 from slip.base.errors import InputError, NotConverged, Problems
 from slip.base.formulas import citation
 from slip.base.units import System
+from slip.joint.surface import Interface
 from slip.report.equations import Explanation
+from slip.report.partial import partial_entry, stiffness_entry
 from slip.verdict.checks import Check
 from slip.verdict.gross_slip import End
 from slip.verdict.standards.common import Judgement
@@ -35,12 +37,16 @@ def result(assessment: Assessment, units: System | None = None) -> dict[str, Any
         "input_digest": joint.digest,
         "units": {kind.replace(" ", "_"): system.unit(kind) for kind in UNITS},
         "holds": verdict.holds,
-        "governing": _governing(verdict.governing, grows),
+        "decides": joint.required.decides,
+        "grows": joint.required.grows,
+        "friction": friction_entry(joint.interface),
+        "governing": governing_entry(verdict.governing, grows),
         "answers": {"slip": _answer(assessment), "stiffness": "not assessed", "cycles": "not assessed"},
         "assumptions": [note.as_dict() for note in assessment.assumptions],
         "warnings": [note.as_dict() for note in assessment.warnings],
-        "checks": [_check(check) for check in verdict.checks],
+        "checks": [check_entry(check) for check in verdict.checks],
         "cases": [_case(assessment, i, system) for i in range(len(joint.cases))],
+        "stiffness": stiffness_entry(assessment, system),
     }
 
 
@@ -71,6 +77,17 @@ def errors_text(error: Problems | NotConverged) -> str:
     return json.dumps({"format": FORMAT, "errors": listed}, indent=2, ensure_ascii=False)
 
 
+def friction_entry(face: Interface) -> dict[str, Any]:
+    """The friction of the sliding face that the result rests on."""
+    return {
+        "low": face.friction_low,
+        "high": face.friction_high,
+        "source": face.friction_source,
+        "basis": face.friction_basis,
+        "parallel_faces": face.parallel_faces,
+    }
+
+
 def _answer(assessment: Assessment) -> str:
     """The answer to the first question; limits of the other two questions do not count here."""
     slipping = [c for c in assessment.verdict.checks if c.decides and c.check not in ("true_slip", "loosening")]
@@ -88,7 +105,8 @@ def _put(target: dict[str, Any], **values: Any) -> dict[str, Any]:
     return target
 
 
-def _governing(check: Check, grows: str) -> dict[str, Any]:
+def governing_entry(check: Check, grows: str) -> dict[str, Any]:
+    """The governing check as the contract's JSON object."""
     found = _put({}, case=check.case, end=check.end)
     found["check"] = check.check
     return _put(
@@ -101,7 +119,8 @@ def _governing(check: Check, grows: str) -> dict[str, Any]:
     )
 
 
-def _check(check: Check) -> dict[str, Any]:
+def check_entry(check: Check) -> dict[str, Any]:
+    """A check as the contract's JSON object."""
     found = _put({}, case=check.case, end=check.end)
     found["check"] = check.check
     _put(
@@ -132,6 +151,9 @@ def _end(assessment: Assessment, end: End, system: System) -> dict[str, Any]:
         "ledger": ledger(assessment, end.bolt_states, system),
         "gross_slip": _gross_slip(assessment, end, system),
     }
+    partial = assessment.partial.of(end.case, end.end)
+    if partial is not None:
+        found["partial_slip"] = partial_entry(partial, system)
     entries = assessment.verdict.standards[end.case, end.end]
     if entries:
         found["standards"] = [

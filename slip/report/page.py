@@ -2,9 +2,8 @@
 
 from __future__ import annotations
 
-import base64
 import math
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterator, Sequence
 from pathlib import Path
 from typing import Any
 
@@ -16,10 +15,12 @@ from slip.assess import Assessment
 from slip.base.formulas import citation
 from slip.base.notes import Note
 from slip.base.units import SI, System
-from slip.report import figures, inputs
+from slip.report import inputs
 from slip.report.equations import Explanation, Line, explain
+from slip.report.partial_rows import partial_part
+from slip.report.picture import picture
 from slip.report.rows import NAME, TEXT, case_table, input_tables, ledger_tables, standard_table, state
-from slip.report.words import CAUTION, NOT_ASSESSED, check_name, factor, plain
+from slip.report.words import CAUTION, NOT_ASSESSED, check_name, factor, once, plain
 from slip.verdict.checks import Check
 from slip.verdict.gross_slip import End
 
@@ -54,7 +55,8 @@ def page(assessment: Assessment, units: System | None = None) -> str:
         unjudged=[f"{check_name(c.check)}: {c.reason}" for c in assessment.verdict.checks if not c.case],
         place=_place(assessment, end),
         ledger=ledger_tables(assessment, end, system),
-        picture=_picture(assessment, end, system),
+        picture=picture(assessment, end, system),
+        partial=partial_part(assessment, system),
         standards=list(_standards(assessment, system)),
         not_assessed=NOT_ASSESSED,
         inputs=inputs.groups(assessment.joint, system),
@@ -199,50 +201,6 @@ def _where(check: Check) -> str:
     return ", ".join(part for part in (plain(check.case, NAME), f"{check.end} end" if check.end else "") if part)
 
 
-# the clamp
-
-
-def _picture(assessment: Assessment, end: End, system: System) -> dict[str, Any]:
-    """The pattern as two images, for light and dark, with the words beside it and the words in its place.
-
-    Of an unsigned case the signs are those that give the least factor per bolt.
-    """
-    light, dark = (_image(assessment, end, system, ink) for ink in (figures.LIGHT, figures.DARK))
-    names, shear = assessment.joint.pattern.names, assessment.slip.shear[end.state]
-    longest = int(np.argmax(shear))
-    vx, vy, mz = (float(x) + 0.0 for x in assessment.clamp.states.load[end.state])
-    said = [
-        ("largest shear", f"{system.say(float(shear[longest]), 'force')} on bolt {plain(names[longest], NAME)}"),
-        ("resultant, x and y", f"{system.say(vx, 'force')}, {system.say(vy, 'force')}"),
-        ("moment at the centroid", f"{system.say(mz, 'moment')} about the normal"),
-        ("group limit, clamp held", _centre(assessment, end, system)),
-    ]
-    alt = (
-        f"Plan of the bolts, {len(names)} in number, with an arrow for the shear on each. "
-        f"The least factor has bolt {plain(names[end.bolt], NAME)}."
-    )
-    return {"light": light, "dark": dark, "alt": alt, "said": said}
-
-
-def _image(assessment: Assessment, end: End, system: System, ink: figures.Ink) -> str:
-    drawn = figures.svg(figures.pattern_figure(assessment, end, system, ink), ink)
-    return "data:image/svg+xml;base64," + base64.b64encode(drawn).decode("ascii")
-
-
-def _centre(assessment: Assessment, end: End, system: System) -> str:
-    if not assessment.slip.sliding[end.group_state]:
-        return "no shear"
-    if assessment.slip.group.factor[end.group_state] == 0:
-        return "the clamp that is left cannot hold any part of the load"
-    centre = figures.group_centre(assessment, end)
-    if centre is None:
-        return "all points slip in one direction: there is no instant centre"
-    place = ", ".join(f"{round(system.out(float(x), 'length'), 6) + 0.0:.6g}" for x in centre)
-    outside = "" if figures.in_view(assessment, end) else ", outside the picture"
-    signs = "" if end.group_state == end.state else ", for another combination of signs than the arrows"
-    return f"the plates turn about ({place}) {system.length}{outside}{signs}"
-
-
 # the standards
 
 
@@ -257,20 +215,13 @@ def _standards(assessment: Assessment, system: System) -> Iterator[dict[str, Any
         yield {
             "label": standard.label,
             "state": state([entry.check for entry in entries]),
-            "said": _once(f"Edition {j.edition}, {j.clause}. Basis: {j.basis}." for j in judged),
+            "said": once(f"Edition {j.edition}, {j.clause}. Basis: {j.basis}." for j in judged),
             "options": plain("; ".join(options), TEXT),
-            "presumes": _once(
-                system.say(j.presumed_preload, "force") for j in judged if j.presumed_preload is not None
-            ),
-            "notes": _once(plain(note, TEXT) for j in judged for note in j.notes),
-            "reasons": _once(plain(entry.check.reason, TEXT) for entry in entries if entry.judgement is None),
+            "presumes": once(system.say(j.presumed_preload, "force") for j in judged if j.presumed_preload is not None),
+            "notes": once(plain(note, TEXT) for j in judged for note in j.notes),
+            "reasons": once(plain(entry.check.reason, TEXT) for entry in entries if entry.judgement is None),
             "table": standard_table(assessment, entries, system) if judged else None,
         }
-
-
-def _once(texts: Iterable[str]) -> list[str]:
-    """Each text once, in the order of its first use."""
-    return list(dict.fromkeys(texts))
 
 
 # every number's own line

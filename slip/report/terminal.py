@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Sequence
+from collections.abc import Callable, Iterable, Iterator, Sequence
 from typing import NamedTuple
 
 import numpy as np
@@ -11,6 +11,7 @@ from slip.assess import Assessment
 from slip.base.notes import Note
 from slip.base.units import System
 from slip.report.checked import NO_SHEAR, WIDTH, case_lines, entries, other_lines
+from slip.report.partial import partial_line
 from slip.report.words import CAUTION, NOT_ASSESSED, at_most, check_name, columns, cut, factor, plain, wrapped
 from slip.verdict.checks import Check
 
@@ -29,45 +30,51 @@ class Room(NamedTuple):
     rules: bool
 
 
-ROOMY, TIGHT = Room(8, 9, 3, 4, 3, True), Room(2, 2, 1, 1, 1, False)
+ROOMY, TIGHT = Room(8, 9, 3, 4, 3, True), Room(1, 1, 1, 1, 1, False)
+SHRINK = ("assumed", "reason", "warnings", "cases", "others")  # in turn, by a line each; the rules go last
 
 
 def check_text(assessment: Assessment, units: System | None = None) -> str:
     """The assessment as text."""
-    system = units or assessment.joint.system
-    lines = list(_lines(assessment, system, ROOMY))
-    if len(lines) > HEIGHT:
-        lines = _fitted(assessment, system)
+    system, room, kept = units or assessment.joint.system, ROOMY, dict[tuple[object, ...], list[str]]()
+    lines = _lines(assessment, system, room, kept)
+    while len(lines) > HEIGHT and room != TIGHT:
+        room = _smaller(room)
+        lines = _lines(assessment, system, room, kept)
     return "\n".join(cut(line.rstrip(), WIDTH) for line in lines) + "\n"
 
 
-def _fitted(assessment: Assessment, system: System) -> list[str]:
-    """The tight layout, which always fits, each part widened in turn as long as it fits."""
-    room, lines = TIGHT, list(_lines(assessment, system, TIGHT))
-    parts = ["rules", "others", "cases", "reason", "assumed", "warnings"]
-    while parts:
-        for part in list(parts):
-            wider = room._replace(**{part: getattr(room, part) + 1})
-            longer = list(_lines(assessment, system, wider))
-            if len(longer) > HEIGHT or getattr(wider, part) > getattr(ROOMY, part):
-                parts.remove(part)
-            else:
-                room, lines = wider, longer
-    return lines
+def _smaller(room: Room) -> Room:
+    """A line less for the part that is the furthest from its least, in the order of SHRINK."""
+    left = {part: getattr(room, part) - getattr(TIGHT, part) for part in SHRINK}
+    if not any(left.values()):
+        return TIGHT
+    part = max(SHRINK, key=lambda part: left[part] / (getattr(ROOMY, part) - getattr(TIGHT, part)))
+    return room._replace(**{part: getattr(room, part) - 1})
 
 
-def _lines(assessment: Assessment, system: System, room: Room) -> Iterator[str]:
-    yield from verdict_lines(assessment, room.reason)
+def _lines(assessment: Assessment, system: System, room: Room, kept: dict[tuple[object, ...], list[str]]) -> list[str]:
+    """All lines at most as many as there is room for; parts of a size that was made before are taken from `kept`."""
     title = plain(assessment.joint.title or assessment.joint.file, WIDTH - 8)
-    yield f"-- {title} ".ljust(WIDTH - columns(title) + len(title), "-")
-    yield from case_lines(assessment, room.cases)
-    yield from other_lines(assessment, room.others, room.reason)
-    if room.rules:
-        yield "-" * WIDTH
-    yield from _ledger(assessment, system)
-    yield from _notes("Assumed", assessment.assumptions, room.assumed)
-    yield from _notes("Warnings", assessment.warnings, room.warnings)
-    yield from wrapped(f"Not assessed: {NOT_ASSESSED}. Caution: {CAUTION}", WIDTH)
+    parts: list[tuple[Callable[..., Iterable[str]], tuple[object, ...]]] = [
+        (verdict_lines, (room.reason,)),
+        (lambda _: [f"-- {title} ".ljust(WIDTH - columns(title) + len(title), "-")], ()),
+        (case_lines, (room.cases,)),
+        (other_lines, (room.others, room.reason)),
+        (lambda _, rules: ["-" * WIDTH] * rules, (room.rules,)),
+        (_ledger, (system,)),
+        (_partial, (system, room.reason)),
+        (_notes, ("Assumed", assessment.assumptions, room.assumed)),
+        (_notes, ("Warnings", assessment.warnings, room.warnings)),
+        (lambda _: wrapped(f"Not assessed: {NOT_ASSESSED}. Caution: {CAUTION}", WIDTH), ()),
+    ]
+    lines = []
+    for i, (make, sizes) in enumerate(parts):
+        key = (i, *sizes)
+        if key not in kept:
+            kept[key] = list(make(assessment, *sizes))
+        lines += kept[key]
+    return lines
 
 
 # the verdict
@@ -161,7 +168,7 @@ def _ledger(assessment: Assessment, system: System) -> Iterator[str]:
     product = f"{friction:g} x {faces} x {say(found.clamp_low[s, b])}"
     holds = f"{product} = {say(friction * faces * found.clamp_low[s, b])}"
     against = f"shear {say(assessment.slip.shear[s, b])}"
-    if (patch := assessment.pressure.patch) is not None:
+    if (patch := assessment.pressure.torque_patch) is not None:
         torque = system.out(abs(float(assessment.clamp.states.load[s, 2])), "moment")
         radius = system.out(patch.friction_radius, "length")
         against += f", torque {torque:.6g} {system.unit('moment')} at {radius:.3g} {system.length}"
@@ -175,13 +182,21 @@ def _ledger(assessment: Assessment, system: System) -> Iterator[str]:
     yield _cells("friction", holds, against)
 
 
+def _partial(assessment: Assessment, system: System, most: int) -> Sequence[str]:
+    """Partial slip at the governing end, or of the first case where the governing check has none."""
+    case, end = assessment.verdict.governing.case, assessment.verdict.governing.end
+    names = [c.name for c in assessment.joint.cases]
+    index = names.index(case) if case in names else 0
+    return at_most(wrapped(partial_line(assessment, index, end or "given", system), WIDTH), most, WIDTH)
+
+
 def _cells(name: str, value: str, remark: str = "") -> str:
     """A row of the ledger."""
     line = f"  {name:<9}{value}"
     return f"{line}   {plain(remark, max(WIDTH - columns(line) - 3, 8))}" if remark else line
 
 
-def _notes(title: str, notes: Sequence[Note], most: int) -> list[str]:
+def _notes(assessment: Assessment, title: str, notes: Sequence[Note], most: int) -> list[str]:
     """Notes in a few lines; what does not fit is counted."""
     for shown in range(len(notes), 0, -1):
         rest = f" (+{len(notes) - shown} more: slip explain)" if shown < len(notes) else ""

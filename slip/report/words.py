@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import math
-from collections.abc import Sequence
+from collections.abc import Iterable, Sequence
 
 CAUTION = (
     "an aid to a qualified engineer. Back friction and preload by test or record; "
@@ -27,7 +27,9 @@ def check_name(check: str) -> str:
 
 def plain(text: str, width: int = 60) -> str:
     """Text on one line without control or direction characters, cut to a width in columns."""
-    return cut(" ".join("".join(c if c.isprintable() else " " for c in text).split()), width)
+    if not text.isprintable():
+        text = "".join(c if c.isprintable() else " " for c in text)
+    return cut(" ".join(text.split()), width)
 
 
 def cut(line: str, width: int) -> str:
@@ -53,14 +55,24 @@ def columns(text: str) -> int:
 
 def wrapped(text: str, width: int, first: str = "", later: str = "  ") -> list[str]:
     """Lines of at most `width` columns, broken at spaces; a word that is longer than a line is cut."""
-    lines, line = list[str](), first
+    lines, line, used = list[str](), first, columns(first)
+    empty = True
     for word in text.split():
-        blank = " " if line.strip() else ""
-        if line.strip() and columns(line + blank + word) > width:
+        more = columns(word)
+        if not empty and used + 1 + more > width:
             lines.append(line)
-            line, blank = later, ""
-        line = cut(line + blank + word, width)
-    return [*lines, line] if line.strip() else lines
+            line, used, empty = later, columns(later), True
+        if used + more + (not empty) > width:
+            word = cut(word, width - used)
+            more = columns(word)
+        line, used = (line + word, used + more) if empty else (f"{line} {word}", used + 1 + more)
+        empty = False
+    return lines if empty else [*lines, line]
+
+
+def once(texts: Iterable[str]) -> list[str]:
+    """Each text once, in the order of its first use."""
+    return list(dict.fromkeys(texts))
 
 
 def at_most(lines: Sequence[str], most: int, width: int) -> Sequence[str]:

@@ -48,11 +48,17 @@ def verdict(joint: Joint, clamp: Clamp, pressure: Pressure, slip: Slip, partial:
             checks += [*judged.checks, *(entry.check for entry in entries)]
             if joint.required.true_slip is not None:
                 checks.append(_true_slip(joint, partial, joint.required.true_slip, i, end))
-    checks += _not_solved(joint)
+    return conclude([*checks, *_not_solved(joint)], tuple(ends), standards)
+
+
+def conclude(
+    checks: Sequence[Check], ends: tuple[End, ...], standards: dict[tuple[int, str], tuple[Entry, ...]]
+) -> Verdict:
+    """What all checks add up to: whether those that decide hold, which one governs, the exit code."""
     holds = all(check.holds for check in checks if check.decides)
     failed = any(check.solved and not check.holds for check in checks if check.decides)
     code = HOLDS if holds else FAILS if failed else NOT_SOLVED
-    return Verdict(tuple(checks), tuple(ends), standards, _governing(checks), holds, code)
+    return Verdict(tuple(checks), ends, standards, _governing(checks), holds, code)
 
 
 def _governing(checks: Sequence[Check]) -> Check:
@@ -72,7 +78,9 @@ def _true_slip(joint: Joint, partial: Partial, most: float, case: int, end: str)
     if found is not None and found.wholly:  # there is no end to its slip
         return Check("true_slip", name, end, "", None, None, None, 0.0, False, True, reason)
     if found is None or reason:
-        return Check("true_slip", name, end, "", None, None, None, None, False, True, f"not solved: {reason}", solved=False)
+        return Check(
+            "true_slip", name, end, "", None, None, None, None, False, True, f"not solved: {reason}", solved=False
+        )
     slip = max((reading.true_slip for reading in found.readings), default=0.0)
     reserve = most / slip if slip > 0 else float("inf")
     said = f"{joint.system.say(slip, 'length')} against {joint.system.say(most, 'length')}"

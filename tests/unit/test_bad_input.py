@@ -680,15 +680,6 @@ BAD = [
         "standard[1].edition",
         ['did you mean "2016"?'],
     ),
-    (
-        "a pressed contact",
-        "[[case]]",
-        '[contact]\nshape = "sphere"\n[[case]]',
-        "contact-not-yet",
-        23,
-        "contact",
-        ["not assessed yet"],
-    ),
 ]  # fmt: skip
 
 

@@ -164,14 +164,17 @@ class _Newton:
 
 
 def dot(a: Array, b: Array) -> Array:
+    """Scalar product over the two components."""
     return a[0] * b[0] + a[1] * b[1]
 
 
 def cross(a: Array, b: Array) -> Array:
+    """Component of the vector product along the normal."""
     return a[0] * b[1] - a[1] * b[0]
 
 
 def length(a: Array) -> Array:
+    """Length over the two components."""
     return np.sqrt(dot(a, a))
 
 

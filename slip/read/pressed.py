@@ -1,0 +1,119 @@
+"""Builder of a pressed contact: a file with [contact] in place of bolts and plates."""
+
+from __future__ import annotations
+
+from functools import partial
+
+from slip.joint.contact import SHAPES, PressedContact
+from slip.joint.loads import Case
+from slip.joint.material import Material
+from slip.read import loading
+from slip.read.demands import interface, required
+from slip.read.document import Document
+from slip.read.reader import Reader, Stop
+from slip.read.sections import Section, many, one
+
+ROUND = ("sphere",)
+FLAT = ("flat", "rounded flat")
+PARTS = ("bolt", "tightening", "losses", "plate", "pattern", "axial", "standard")
+NO_MATTER = ("one-face", "no-overturning")  # assumptions that a single pressed face does not make
+ALONE = 1e-9  # of the shear; ends that differ more than this in direction are not on one line
+
+
+def pressed(r: Reader, document: Document) -> PressedContact:
+    """The contact of a document whose format was checked; raises Problems with every fault."""
+    for name in PARTS:
+        if name in document.tree:
+            r.fail(
+                (name,),
+                "contact-with-bolts",
+                f"[{name}] beside [contact]",
+                "a contact or a joint with bolts",
+                "remove one",
+            )
+    section = one(r, "contact")
+    shape = r.attempt(lambda: section.need("shape", "the profile", f"add shape, one of {', '.join(SHAPES)}"))
+    sizes = r.attempt(partial(_sizes, section, shape)) if shape else None
+    force = r.attempt(lambda: section.need("normal_force", "the force that presses", 'add normal_force = "2 kN"'))
+    bodies = r.attempt(partial(_bodies, r))
+    face = r.attempt(lambda: interface(r, one(r, "interface")))
+    if "parallel_faces" in document.tree.get("interface", {}):
+        path = ("interface", "parallel_faces")
+        r.fail(path, "contact-load", "parallel_faces", "one face of a pressed contact", "leave it out")
+    demands = r.attempt(lambda: required(r, one(r, "required")))
+    cases = r.attempt(partial(_cases, r))
+    bulk = r.attempt(lambda: float(section.get("bulk_stress", 0.0)))
+    r.finish()
+    assert shape and sizes and force and bodies and face and demands and cases and bulk is not None
+    return PressedContact(
+        title=document.tree.get("title", ""),
+        system=r.system,
+        shape=shape,
+        radius=sizes[0],
+        flat_width=sizes[1],
+        length=sizes[2],
+        normal_force=force,
+        bulk_stress=bulk,
+        bodies=bodies,
+        interface=face,
+        required=demands,
+        cases=cases,
+        assumptions=tuple(note for note in r.assumptions if note.code not in NO_MATTER),
+        warnings=tuple(r.warnings),
+        digest=document.digest,
+        file=document.file,
+    )
+
+
+def _sizes(section: Section, shape: str) -> tuple[float | None, float | None, float | None]:
+    """Radius, flat width and length as the shape needs them."""
+    radius = width = length = None
+    if shape != "flat":
+        radius = section.need("radius", f"the radius of a {shape}", 'add radius = "10 mm"')
+    if shape in FLAT:
+        width = section.need("flat_width", "the width or diameter of the flat part", 'add flat_width = "8 mm"')
+    if shape == "cylinder":
+        length = section.need("length", "the length of a cylinder", 'add length = "20 mm"')
+    elif shape not in ROUND:
+        length = section.get("length")
+    if shape == "flat" and length is not None:
+        remedy = "leave out length, or take a rounded flat with the radius of its edge"
+        raise section.stop(
+            "length", "contact-flat-plane", "a plane flat", "a round flat, whose edge may be sharp", remedy
+        )
+    return radius, width, length
+
+
+def _bodies(r: Reader) -> tuple[Material, Material]:
+    """Materials of the two bodies."""
+    entries = many(r, "body[]")
+    if len(entries) != 2:
+        raise r.stop(
+            ("body",), "wrong-count", f"{len(entries)} [[body]]", "the two bodies", "write two [[body]] with material"
+        )
+    first, second = (e.need("material", "of the body", 'add material = "steel"') for e in entries)
+    return first, second
+
+
+def _cases(r: Reader) -> tuple[Case, ...]:
+    """Load cases of a contact: shear alone, both ends on one line."""
+    found = loading.cases(r, None)
+    for i, case in enumerate(found):
+        path = ("case", i)
+        loads = [load for _, load in case.ends]
+        if any(load.axial or any(load.moment) for load in loads) or case.at is not None or case.unsigned:
+            remedy = "leave out axial, moment, at and peak"
+            raise r.stop(path, "contact-load", "more than a shear", "shear alone on a pressed contact", remedy)
+        if len(loads) == 2:
+            (ax, ay), (bx, by) = loads[0].shear, loads[1].shear
+            if abs(ax * by - ay * bx) > ALONE * max(ax * ax + ay * ay, bx * bx + by * by):
+                raise r.stop(
+                    path,
+                    "contact-load",
+                    "ends in two directions",
+                    "both ends on one line",
+                    "write a case for each direction",
+                )
+    if not found:
+        raise Stop
+    return found
