@@ -14,7 +14,6 @@ from slip.clamp import working
 from slip.clamp.assembly import Assembly, assemble, stress_area
 from slip.clamp.states import States, states
 from slip.joint.joint import Joint
-from slip.joint.tightening import Torque
 
 Array = np.ndarray
 TORSION_FRICTION = (
@@ -122,7 +121,7 @@ def _yield_use(joint: Joint, assembly: Assembly, force: Array, trace: Trace, not
     shanks += [bolt.shank_diameter] if bolt.shank_diameter is not None else []
     area = min(area, *(float(screw.round_area(d)) for d in shanks))
     d2 = trace("pitch diameter", screw.pitch_diameter, d=bolt.thread.diameter, P=bolt.thread.pitch)
-    given = joint.tightening.thread_friction if isinstance(joint.tightening, Torque) else None
+    given = joint.tightening.thread_friction
     if given is None:
         text = f"thread friction {TORSION_FRICTION:g} for the torsion in the bolt"
         notes.append(Note("torsion-friction", text, "tightening.thread_friction"))

@@ -34,16 +34,22 @@ class Torque:
     prevailing: Range
     scatter: Scatter | None
     tool_accuracy: float | None
+    source: str
 
 
 @dataclass(frozen=True, eq=False)
 class Preload:
-    """Assembly preload given as lowest and highest per bolt, shape (n,) in N; `nominal` where a scatter made them, else None."""
+    """Assembly preload given as lowest and highest per bolt, shape (n,) in N; `nominal` where a scatter made them, else None.
+
+    thread_friction is only asked for by the torsion that tightening leaves in the bolt. source: where the file says it comes from.
+    """
 
     low: Array
     high: Array
     nominal: Array | None
     scatter: Scatter | None
+    thread_friction: Range | None
+    source: str
 
 
 @dataclass(frozen=True)

@@ -17,7 +17,8 @@ from slip.read.sections import Section
 
 SCATTERS = ("method", "scatter", "scatter_ratio", "scatter_sigma", "tool_accuracy")
 Range = tuple[float, float] | None
-OF_TORQUE = ("thread_friction", "head_friction", "nut_factor", "prevailing_torque")
+Ends = tuple[np.ndarray, np.ndarray, np.ndarray | None, Scatter | None]
+OF_TORQUE = ("head_friction", "nut_factor", "prevailing_torque")
 
 
 def tightening(r: Reader, s: Section, bolts: BoltList | None, bolt: Bolt | None) -> Torque | Preload:
@@ -38,11 +39,12 @@ def tightening(r: Reader, s: Section, bolts: BoltList | None, bolt: Bolt | None)
     if idle:
         text = f"beside a preload {', '.join(idle)} take{'' if len(idle) > 1 else 's'} no part"
         r.warn("no-part", text, f"tightening.{idle[0]}")
-    return _preload(s, bolts, s.get("preload", PreloadForm({}, None)))
+    low, high, nominal, scatter = _preload(s, bolts, s.get("preload", PreloadForm({}, None)))
+    return Preload(low, high, nominal, scatter, ranged(s, "thread_friction"), s.get("source", ""))
 
 
-def _preload(s: Section, bolts: BoltList, form: PreloadForm) -> Preload:
-    """Preload per bolt, from the list, from ranges, or from a nominal with its scatter."""
+def _preload(s: Section, bolts: BoltList, form: PreloadForm) -> Ends:
+    """Low, high and nominal preload per bolt with their scatter: from the list, from ranges, or from a nominal."""
     scatter = _scatter(s)
     if form.nominal is not None:
         if scatter is None:
@@ -52,16 +54,16 @@ def _preload(s: Section, bolts: BoltList, form: PreloadForm) -> Preload:
             )
             raise s.stop_value("preload", "preload-without-scatter", expected, write)
         nominal = form.nominal * np.ones(bolts.pattern.count)
-        return Preload(nominal * (1 - scatter.bound), nominal * (1 + scatter.bound), nominal, scatter)
+        return nominal * (1 - scatter.bound), nominal * (1 + scatter.bound), nominal, scatter
     if scatter is not None:
         key = next(name for name in SCATTERS if s.has(name))
         raise s.stop(key, "too-many-forms", "lowest and highest preload, and a scatter", "one of them", f"remove {key}")
     if bolts.preload_low is not None and bolts.preload_high is not None:
-        return Preload(bolts.preload_low, bolts.preload_high, None, None)
+        return bolts.preload_low, bolts.preload_high, None, None
     return _ranges(s, bolts.pattern, form.ranges)
 
 
-def _ranges(s: Section, pattern: Pattern, ranges: dict[str, tuple[float, float]]) -> Preload:
+def _ranges(s: Section, pattern: Pattern, ranges: dict[str, tuple[float, float]]) -> Ends:
     """Preload from ranges by bolt name, '' for all others."""
     unknown = [name for name in ranges if name and name not in pattern.names]
     if unknown:
@@ -74,7 +76,7 @@ def _ranges(s: Section, pattern: Pattern, ranges: dict[str, tuple[float, float]]
         found = f"nothing for {', '.join(missing[:8])}"
         raise s.stop("preload", "bolt-without-preload", found, "a preload for every bolt", "add others = [low, high]")
     each = np.array([ranges[name] if name in ranges else ranges[""] for name in pattern.names])
-    return Preload(each[:, 0], each[:, 1], None, None)
+    return each[:, 0], each[:, 1], None, None
 
 
 def _torque(r: Reader, s: Section, bolt: Bolt | None) -> Torque:
@@ -94,7 +96,9 @@ def _torque(r: Reader, s: Section, bolt: Bolt | None) -> Torque:
         text = f"tightening scatter {scatter.bound:.0%}, the table's largest ({scatter.text})"
         r.assume("scatter-worst", text, "tightening.method")
     accuracy = s.get("tool_accuracy")
-    return Torque(turning[0], *frictions, turning[1], None if accuracy is not None else scatter, accuracy)
+    return Torque(
+        turning[0], *frictions, turning[1], None if accuracy is not None else scatter, accuracy, s.get("source", "")
+    )
 
 
 def _turning(r: Reader, s: Section) -> tuple[float, tuple[float, float]]:

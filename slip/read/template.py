@@ -74,8 +74,21 @@ CONTACT: Values = {
 }
 KINDS_OF_FILE: dict[str, Values] = {"bolted": BOLTED, "lap": LAP, "contact": CONTACT}
 CONTACT_ONLY = ("contact", "body[]")
-BOLTED_ONLY = ("bolt", "bolt.segment[]", "tightening", "losses", "plate[]", "pattern", "axial", "standard[]")
-BOLTED_ONLY += ("finite_elements", "fretting", "loosening", "scatter", "table")
+BOLTED_ONLY = (
+    "bolt",
+    "bolt.segment[]",
+    "tightening",
+    "losses",
+    "plate[]",
+    "pattern",
+    "axial",
+    "standard[]",
+    "finite_elements",
+    "fretting",
+    "loosening",
+    "scatter",
+    "table",
+)
 # Commented keys whose kind alone would suggest an absurd value.
 SAMPLES = {
     "bolt.yield_strength": '"640 MPa"',

@@ -121,6 +121,8 @@ def _tightening(given: Torque | Preload, system: System) -> list[Pair]:
             ("highest preload after assembly", _spread(given.high, system)),
             ("nominal preload", _spread(given.nominal, system) if given.nominal is not None else ""),
             ("scatter", _scatter(given.scatter)),
+            ("friction in the thread, for torsion", _range(given.thread_friction)),
+            ("source", plain(given.source, TEXT)),
         ]
     drag = between(*(system.say(x, "moment") for x in given.prevailing)) if any(given.prevailing) else ""
     return [
@@ -131,6 +133,7 @@ def _tightening(given: Torque | Preload, system: System) -> list[Pair]:
         ("prevailing torque", drag),
         ("scatter", _scatter(given.scatter)),
         ("accuracy of the tool", share(given.tool_accuracy) if given.tool_accuracy is not None else ""),
+        ("source", plain(given.source, TEXT)),
     ]
 
 

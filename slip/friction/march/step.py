@@ -23,7 +23,8 @@ Mask = NDArray[np.bool_]
 # Tuning, held by tests on hundreds of random problems.
 MOST_STEPS = 100  # 3 to 10 are usual
 FADING = 0.1  # errors are relative to at least this part of the displacements and of the load before the step
-FAINT = 1e-9  # parts of what friction can do: displacements below are rounding, and errors are not measured by them
+FAINT = 1e-9  # part of what friction can displace: less is rounding, and errors are not measured by it
+FAINT_WORK = 1e-8  # part of the energy that friction can store: the balance is not measured by less
 SELF_STRESS = 1e-3  # part of the tractions' sum that a load's error is relative to where the load itself vanishes
 
 
@@ -185,7 +186,7 @@ def _step(problem: Problem, before: State, end: Point) -> Step:
         energy,
         energy_before,
     ]
-    spanned = max(*spans, FAINT**2 * problem.product(problem.bound, problem.largest * problem.bound))
+    spanned = max(*spans, FAINT_WORK * problem.product(problem.bound, problem.largest * problem.bound))
     return Step(
         state=state,
         load=load,
