@@ -82,7 +82,12 @@ def _place(error: BaseException) -> str:
 
 
 def _assess(path: str) -> Assessment | PressedAssessment:
-    """The assessment of a joint file. Nothing is garbage while the modules load; looking for it costs a twentieth of the start."""
+    """The assessment of a joint file. Nothing is garbage while the modules load; looking for it costs a twentieth of the start.
+
+    All matrices here are small: threads of the linear algebra library only cost time to start, a fifth of a check.
+    """
+    for name in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
+        os.environ.setdefault(name, "1")
     collecting = gc.isenabled()
     gc.disable()
     try:

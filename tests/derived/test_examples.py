@@ -27,7 +27,7 @@ def example(name: str) -> tuple[Assessment, dict[str, Any]]:
 
 
 def test_every_example_is_here() -> None:
-    assert {path.stem for path in EXAMPLES.glob("*.toml")} == {"bracket", "lever", "splice", "tray"}
+    assert {path.stem for path in EXAMPLES.glob("*.toml")} == {"bracket", "lever", "pad", "splice", "tray"}
 
 
 def circle(d: float) -> float:
@@ -177,6 +177,35 @@ def test_splice() -> None:
     assert governing["reserve_factor"] == pytest.approx(resistance / (1.5 * shear))
     assert round(resistance / (1.5 * shear), 3) == 1.504
     assert found["holds"]
+
+
+def test_pad(run_check: Any) -> None:
+    """A steel sphere of 10 mm under 100 N that rocks with 15 N: half of what friction .3 holds; 2.0 against 1.8.
+
+    Sphere on sphere of like elastic bodies: the normal and the tangential half-space, and the area of the loop.
+    """
+    P, Q, mu, R, E, nu = 100.0, 15.0, 0.3, 10.0, 210e3, 0.3
+    E_both = 1 / (2 * (1 - nu**2) / E)
+    G_both = 1 / (2 * (2 - nu) / (E / 2 / (1 + nu)))
+    a, q = (3 * P * R / 4 / E_both) ** (1 / 3), Q / mu / P
+
+    def motion(q: float) -> float:
+        return 3 * mu * P / (16 * a * G_both) * (1 - (1 - q) ** (2 / 3))
+
+    # a loop by Masing: four times load times motion, less eight times the motion summed over the first loading
+    loop = 4 * Q * motion(q) - 8 * mu * P * quad(motion, 0, q, epsabs=0, epsrel=1e-12)[0]
+    result, code = run_check((EXAMPLES / "pad.toml").read_text(encoding="utf-8"))
+    assert (result["governing"]["factor"], code) == (pytest.approx(mu * P / Q), 0)
+    found = result["cases"][0]["ends"][0]["partial_slip"]
+    closed, stepped = found["routes"]
+    assert found["contact_size"] == pytest.approx(a)
+    assert found["peak_pressure"] == pytest.approx(3 * P / (2 * pi * a**2))
+    assert closed["stiffness"] == pytest.approx(8 * a * G_both)
+    assert closed["stick_ratio"] == pytest.approx((1 - q) ** (1 / 3))
+    assert closed["displacement"] == pytest.approx(motion(q))
+    assert closed["energy_per_cycle"] == pytest.approx(loop)
+    for key in ("displacement", "stiffness", "stick_ratio", "energy_per_cycle"):
+        assert stepped[key] == pytest.approx(closed[key], rel=0.015), key
 
 
 @pytest.mark.parametrize("name", ["bracket", "lever", "splice", "tray"])

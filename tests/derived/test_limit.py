@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 import numpy as np
 import pytest
 from scipy.optimize import linprog
@@ -12,6 +14,7 @@ from slip.friction.march.limit import Limit, limit
 from slip.friction.march.relief import limit_with_relief, relieved_factor
 
 BRACKET = np.array([[x, y] for y in (60.0, -60.0) for x in (-80.0, 0.0, 80.0)])
+SIMULATION = "limit analysis by an independent simulation"
 SQUARE = np.array([[50.0, 50.0], [50.0, -50.0], [-50.0, 50.0], [-50.0, -50.0]])
 
 
@@ -48,57 +51,66 @@ def audit(bound, positions, load, answer: Limit) -> None:
 # --- values known from elsewhere -----------------------------------------------------------------------------------------------------
 
 
-def test_bracket_of_six() -> None:
-    """Group safety 2.1300, centre (-93.93, 0); 1.97 and 1.84 with 6250 N axial per bolt. Source limit, derived."""
+def test_bracket_of_six(validate: Any) -> None:
+    """Group safety 2.1300, centre (-93.93, 0); 1.97 and 1.84 with 6250 N axial per bolt."""
     preload, axial = 78000.0 - 4500.0 - 3000.0, (1.0 - 0.15) * 6250.0
     load = (0.0, 24000.0, 2.0e6)
     answer = limit(np.full(6, 0.18 * preload), BRACKET, load)
-    assert answer.factor == pytest.approx(2.1300, abs=5e-5)
-    assert answer.centre == pytest.approx([-93.93, 0.0], abs=5e-3)
     audit(np.full(6, 0.18 * preload), BRACKET, load, answer)
-    assert limit(np.full(6, 0.18 * (preload - axial)), BRACKET, load).factor == pytest.approx(1.97, abs=5e-3)
+    held = limit(np.full(6, 0.18 * (preload - axial)), BRACKET, load)
     grown = limit_with_relief(np.full(6, 0.18 * preload), np.full(6, 0.18 * axial), BRACKET, load)
-    assert grown.factor == pytest.approx(1.84, abs=5e-3)
+    for what, printed, found in (
+        ("factor", "2.1300", answer.factor),
+        ("centre x [mm]", "-93.93", answer.centre[0]),
+        ("factor with 6250 N axial per bolt, held", "1.97", held.factor),
+        ("factor with 6250 N axial per bolt, growing", "1.84", grown.factor),
+    ):
+        validate(16, f"limit of the bracket: {what}", SIMULATION, "derived", printed, found)
+    assert answer.centre[1] == pytest.approx(0.0, abs=5e-3)
 
 
-def test_single_bolt_of_the_bracket() -> None:
-    """Safety 2.06 with the clamp held, load factor 1.779 with all loads. Source limit, derived."""
+def test_single_bolt_of_the_bracket(validate: Any) -> None:
+    """Safety 2.06 with the clamp held, load factor 1.779 with all loads."""
     shear = np.hypot(4200.0, -3100.0)
-    assert relieved_factor([0.18 * 59875.0], [0.0], [1.0 / shear]) == pytest.approx(2.06, abs=5e-3)
-    assert relieved_factor([0.18 * 70500.0], [0.18 * 0.85 * 12500.0], [1.0 / shear]) == pytest.approx(1.779, abs=5e-4)
+    held = relieved_factor([0.18 * 59875.0], [0.0], [1.0 / shear])
+    grown = relieved_factor([0.18 * 70500.0], [0.18 * 0.85 * 12500.0], [1.0 / shear])
+    validate(16, "one bolt of the bracket: clamp held", "statics by hand", "derived", "2.06", held)
+    validate(16, "one bolt of the bracket: all loads growing", "statics by hand", "derived", "1.779", grown)
 
 
-@pytest.mark.parametrize(("arm", "force"), [(100.0, 32211.4), (50.0, 45553.9), (200.0, 19239.3)])
-def test_four_bolts_off_centre(arm: float, force: float) -> None:
-    """Four bolts of 15 kN, force along y at x = arm. Source limit, derived."""
+@pytest.mark.parametrize(("arm", "force"), [(100.0, "32211.4"), (50.0, "45553.9"), (200.0, "19239.3")])
+def test_four_bolts_off_centre(arm: float, force: str, validate: Any) -> None:
+    """Four bolts of 15 kN, force along y at x = arm."""
     answer = limit(np.full(4, 15000.0), SQUARE, (0.0, 1.0, arm))
-    assert answer.factor == pytest.approx(force, abs=0.05)
+    validate(17, f"limit of four bolts, e {arm:.0f} mm", SIMULATION, "derived", force, answer.factor, unit="N")
     audit(np.full(4, 15000.0), SQUARE, (0.0, 1.0, arm), answer)
 
 
-def test_four_bolts_torque() -> None:
-    """4242.64 N m, all at 50 sqrt(2) mm. Source limit, derived."""
+def test_four_bolts_torque(validate: Any) -> None:
+    """4242.64 N m, all at 50 sqrt(2) mm."""
     answer = limit(np.full(4, 15000.0), SQUARE, (0.0, 0.0, 1.0))
     assert answer.factor == pytest.approx(15000.0 * 4 * 50.0 * np.sqrt(2.0), rel=1e-10)
-    assert answer.factor == pytest.approx(4242.64e3, abs=5.0)
+    torque, by_hand = answer.factor / 1e3, "4 x 15 kN x 50 sqrt 2 mm"
+    validate(17, "limit of four bolts, pure torque", by_hand, "derived", "4242.64", torque, unit="N m")
     assert answer.centre == pytest.approx([0.0, 0.0], abs=1e-4)
 
 
 @pytest.mark.parametrize(
     ("points", "arm", "factor"),
     [
-        ([(0.0, -60.0), (0.0, 60.0)], 200.0, 0.5747),
-        ([(-60.0, 0.0), (60.0, 0.0)], 200.0, 0.4615),
-        ([(0.0, y) for y in (-3.0, 0.0, 3.0)], 3.0, 1.8229),
-        ([(0.0, y) for y in (-7.5, -4.5, -1.5, 1.5, 4.5, 7.5)], 6.0, 3.7413),
-        ([(x, y) for x in (-2.75, 2.75) for y in (-3.0, 0.0, 3.0)], 8.0, 2.2353),
+        ([(0.0, -60.0), (0.0, 60.0)], 200.0, "0.5747"),
+        ([(-60.0, 0.0), (60.0, 0.0)], 200.0, "0.4615"),
+        ([(0.0, y) for y in (-3.0, 0.0, 3.0)], 3.0, "1.8229"),
+        ([(0.0, y) for y in (-7.5, -4.5, -1.5, 1.5, 4.5, 7.5)], 6.0, "3.7413"),
+        ([(x, y) for x in (-2.75, 2.75) for y in (-3.0, 0.0, 3.0)], 8.0, "2.2353"),
     ],
 )
-def test_slip_factors(points: list[tuple[float, float]], arm: float, factor: float) -> None:
-    """Load along y at x = arm, bolts of 1. Source limit, derived."""
+def test_slip_factors(points: list[tuple[float, float]], arm: float, factor: str, validate: Any) -> None:
+    """Load along y at x = arm, bolts of 1."""
     bound, load = np.ones(len(points)), (0.0, 1.0, arm)
     answer = limit(bound, points, load)
-    assert answer.factor == pytest.approx(factor, abs=5e-5)
+    what = f"slip factor of {len(points)} bolts, first at {points[0]}, e {arm:g}"
+    validate(18, what, SIMULATION, "derived", factor, answer.factor)
     audit(bound, np.array(points), load, answer)
 
 

@@ -510,6 +510,38 @@ def test_service_loads_are_not_compared_with_design_resistances(run_check: Any) 
     assert code == 0
 
 
+@pytest.mark.parametrize("name", ["VDI 2230", "EN 1993-1-8", "AISC 360", "NASA-STD-5020"])
+def test_the_level_raises_shear_and_axial(name: str, run_check: Any) -> None:
+    """5 kN of shear with 10 kN of tension at 1.5 times the file's loads; what is left of the clamp falls with the tension."""
+    V, T, level, preload = 5000.0, 10e3, 1.5, 180e3
+
+    def vdi(shear: float, tension: float) -> float:
+        return (preload - 0.8 * tension) / (shear / 0.2) / 1.2
+
+    def en(shear: float, tension: float) -> float:
+        return 0.5 * (0.7 * 1000 * 245 - 0.8 * tension) / 1.25 / shear
+
+    def aisc(shear: float, tension: float) -> float:
+        return 0.30 * 1.13 * 179e3 * (1 - tension / (1.13 * 179e3)) / shear
+
+    def nasa(shear: float, tension: float) -> float:
+        return 0.2 * 0.9 * preload / (1.4 * (shear + 0.2 * tension))
+
+    right = {"VDI 2230": vdi, "EN 1993-1-8": en, "AISC 360": aisc, "NASA-STD-5020": nasa}[name]
+    keys = {
+        "EN 1993-1-8": EN.partition("\n")[2],
+        "AISC 360": 'surface = "A"\nmethod = "LRFD"',
+        "NASA-STD-5020": 'safety_factor = 1.4\npreload_variation = 0.1\nsurface = "tested"',
+    }
+    bolt = M20 if name != "AISC 360" else 'thread = "M20"\ngrade = "A490M"'
+    text = file(PULLED, bolt=bolt, tightening=f"preload = [{preload}, {preload}]")
+    entry = f'[[standard]]\nname = "{name}"\n{keys.get(name, "")}\nto_standard_level = {level}'
+    result, _ = run_check(f"{text}\n{entry}")
+    reserve = standard_check(result)["reserve_factor"]
+    assert reserve == pytest.approx(right(level * V, level * T))
+    assert is_not(reserve, right(V, T), right(level * V, T))
+
+
 def test_what_was_not_compared_does_not_hide_what_fails(run_check: Any) -> None:
     result, code = run_check(file(bolt=M20, tightening="preload = [20e3, 30e3]") + f"\n[[standard]]\n{EN}")
     assert (code, result["answers"]["slip"], result["governing"]["check"]) == (1, "fails", "gross_slip.per_bolt")
