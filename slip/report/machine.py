@@ -30,7 +30,7 @@ def result(assessment: Assessment, units: System | None = None) -> dict[str, Any
     joint, verdict = assessment.joint, assessment.verdict
     system = units or joint.system
     grows = joint.required.grows
-    return {
+    found = {
         "format": FORMAT,
         "title": joint.title,
         "tool": {"name": "slip", "version": slip.__version__},
@@ -46,8 +46,9 @@ def result(assessment: Assessment, units: System | None = None) -> dict[str, Any
         "warnings": [note.as_dict() for note in assessment.warnings],
         "checks": [check_entry(check) for check in verdict.checks],
         "cases": [_case(assessment, i, system) for i in range(len(joint.cases))],
-        "stiffness": stiffness_entry(assessment, system),
     }
+    stiffness = stiffness_entry(assessment, system)
+    return found | ({"stiffness": stiffness} if stiffness else {})
 
 
 def text(assessment: Assessment, units: System | None = None) -> str:

@@ -112,7 +112,7 @@ def test_measured_stiffness_wins_over_roughness(run_check):
 
 def test_without_roughness_or_measurement_nothing_is_invented(run_check):
     found, code = run_check(single(3000, ""))
-    assert "partial_slip" not in found["cases"][0]["ends"][0] and found["stiffness"] == {}
+    assert "partial_slip" not in found["cases"][0]["ends"][0] and "stiffness" not in found
 
 
 def test_static_case_has_no_energy_and_beyond_gross_slip_nothing_is_computed(run_check):

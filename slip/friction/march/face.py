@@ -10,6 +10,8 @@ from numpy.typing import ArrayLike, NDArray
 
 Array = NDArray[np.float64]
 
+ONE_PLACE = 1e-9  # points that lie as near to each other as this, in parts of their positions, bear no moment
+
 
 @dataclass(frozen=True, eq=False)
 class Face:
@@ -66,13 +68,15 @@ class Face:
         middle = (weight * self.positions).sum(axes) / weight.sum()
         way = self.positions - middle.reshape(2, *(1 for _ in axes))
         spread = float(np.sqrt((weight * way**2).sum() / weight.sum()))
+        if spread <= ONE_PLACE * float(np.abs(self.positions).max()):
+            return lambda load: float(np.hypot(load[0], load[1]))
 
         def size(load: Array) -> float:
             force, moment = (
                 float(np.hypot(load[0], load[1])),
                 float(load[2] - middle[0] * load[1] + middle[1] * load[0]),
             )
-            return max(force, abs(moment) / spread) if spread > 0.0 else force
+            return max(force, abs(moment) / spread)
 
         return size
 

@@ -118,7 +118,7 @@ def step(
     problem, start = _problem(compliance, _bound(bound, compliance), face, before, motion, load)
     if problem.load is not None:
         check_limit(face, problem.bound * compliance.area, problem.load)
-    elif not (problem.bound.any() or before.bound.any()):
+    elif state is None and not problem.bound.any():
         check_limit(face, problem.bound, np.zeros(face.freedoms))
     solver = settle if problem.load is None else carry
     end = solver(problem, from_coarse(problem, start, tol, solver), tol, MOST_STEPS)
