@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import argparse
+import contextlib
 import gc
 import os
 import sys
@@ -57,6 +58,10 @@ def _say(outcome: Outcome, as_json: bool) -> int:
         print(outcome.text, end="" if outcome.text.endswith("\n") else "\n", flush=True)
     except BrokenPipeError:  # the reader of a pipe has left; there is nobody to tell
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+    except OSError as error:  # a full disk behind a redirection
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+        print(f"slip: {_not_written('standard output', error)}", file=sys.stderr)
+        return INPUT_WRONG
     return outcome.code
 
 
@@ -184,12 +189,13 @@ def _write(path: Path, text: str, source: Path) -> None:
         raise Problems(
             [InputError("report-over-input", "--report", "the joint file itself", "another path", remedy, str(path))]
         )
-    beside = path.with_name(path.name + ".part")
+    beside = path.parent / f"{path.name}.{os.getpid()}.part"
     try:
         beside.write_text(text, encoding="utf-8")
         beside.replace(path)
     except OSError as error:
-        beside.unlink(missing_ok=True)
+        with contextlib.suppress(OSError):
+            beside.unlink()
         raise _not_written(str(path), error) from None
 
 

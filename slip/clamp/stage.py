@@ -6,6 +6,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from slip.base.errors import InputError, Problems
 from slip.base.notes import Note
 from slip.base.trace import Trace
 from slip.clamp import thread as screw
@@ -53,8 +54,9 @@ class Clamp:
 
 
 def clamp(joint: Joint) -> Clamp:
-    """The clamp stage of a joint."""
+    """The clamp stage of a joint. Raises Problems for a lowest preload that no bolt of the grade can carry."""
     assembly, loaded = assemble(joint), states(joint)
+    _refuse_impossible(joint, assembly)
     notes: list[Note] = []
     result = ledger(joint, assembly, loaded, notes)
     assumptions = (*assembly.assumptions, *notes)
@@ -77,7 +79,11 @@ def ledger(joint: Joint, assembly: Assembly, loaded: States, notes: list[Note]) 
     else:
         relief = trace("axial relief", working.axial_relief, Phi=assembly.share_low, F_ax=loaded.axial)
     low = trace("lowest clamp", working.clamp_low, **kept, relief=relief)
-    high = trace("highest clamp", working.clamp_high, F_high=assembly.high, F_gain=gain)
+    top = {"F_high": assembly.high, "F_gain": gain}
+    if joint.axial.credit_compression:
+        high = trace("highest clamp, compression credited", working.clamp_high_credited, **top, relief=relief)
+    else:
+        high = trace("highest clamp", working.clamp_high, **top)
     force = trace(
         "highest bolt force",
         working.bolt_force_high,
@@ -145,9 +151,24 @@ def _bearing_pressure(joint: Joint, force: Array, trace: Trace) -> Array | None:
     return pressure
 
 
+def _refuse_impossible(joint: Joint, assembly: Assembly) -> None:
+    """A lowest preload above the tensile force of the bolt is a wrong input: it would hold what no bolt can hold."""
+    bolt, say = joint.bolt, joint.system.say
+    if bolt.grade is None or bolt.thread is None:
+        return
+    most, lowest = bolt.grade.tensile_strength * stress_area(bolt.thread, Trace()), float(assembly.low.max())
+    if lowest > most:
+        found = f"a lowest preload of {say(lowest, 'force')}"
+        expected = f"at most the tensile force of the bolt, {say(most, 'force')}"
+        remedy = "correct the tightening, the thread or the grade"
+        raise Problems([InputError("preload-impossible", "tightening", found, expected, remedy, joint.file)])
+
+
 def _warnings(joint: Joint, assembly: Assembly, found: Ledger) -> list[Note]:
     """What a reviewer must know about the bolt and its bearing face."""
     warnings = []
+    if joint.bolt.grade is None:
+        warnings.append(Note("no-grade", "no grade: the strength of the bolt is not judged", "bolt.grade"))
     bolt, say = joint.bolt, joint.system.say
     if bolt.grade is not None and bolt.thread is not None:
         limit = bolt.grade.yield_strength * stress_area(bolt.thread, Trace())

@@ -113,6 +113,12 @@ def clamp_high(F_high: Value, F_gain: Value) -> Value:
     return F_high + F_gain
 
 
+@formula("clamp_high", "F_high + F_gain - min(relief, 0)", unit="N", **STATICS)
+def clamp_high_credited(F_high: Value, F_gain: Value, relief: Value) -> Value:
+    """As clamp_high, with the clamp that a credited compression adds, a negative relief (statics, derived)."""
+    return F_high + F_gain - np.minimum(relief, 0)
+
+
 @formula("F_bolt", "F_high + F_gain + Phi*max(F_ax, 0)", unit="N", **STATICS)
 def bolt_force_high(F_high: Value, F_gain: Value, Phi: Value, F_ax: Value) -> Value:
     """Highest bolt force [N]: highest clamp and the bolt's share (its high end) of an axial tension (statics, derived)."""

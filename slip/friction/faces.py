@@ -9,9 +9,8 @@ import numpy as np
 from slip.base.trace import Trace
 from slip.clamp.losses import ra_from_rz, rq_from_ra
 from slip.friction.closed import bodies, rough
-from slip.friction.closed.layers import thickness_compliance
+from slip.friction.closed.layers import inner_thickness_compliance, thickness_compliance
 from slip.joint.joint import Joint
-from slip.joint.plates import Plate
 from slip.joint.surface import Roughness
 
 Array = np.ndarray
@@ -57,7 +56,9 @@ def face_stiffness(joint: Joint) -> FaceStiffness | None:
     rho = trace("tangential over normal stiffness", bodies.stiffness_ratio, G_star=G_star, E_star=E_star)
     normal = trace("normal stiffness for each MPa", rough.normal_stiffness, p=1.0, h_rms=h_rms, gamma=GAMMA)
     slope = float(trace("tangential stiffness for each MPa", rough.shear_stiffness, k_n=normal, rho=rho))
-    return FaceStiffness((slope / SCATTER, slope, slope * SCATTER), None, "campana2011;paggi2014", "published", trace)
+    return FaceStiffness(
+        (slope / SCATTER, slope, slope * SCATTER), None, "persson2007;campana2011;paggi2014", "memory", trace
+    )
 
 
 def _rq(face: Roughness, trace: Trace) -> float:
@@ -68,11 +69,17 @@ def _rq(face: Roughness, trace: Trace) -> float:
     return float(trace("Rq of a face", rq_from_ra, Ra=ra))
 
 
-def plate_shear(plates: tuple[Plate, ...]) -> float:
-    """Compliance per area [mm/MPa] of the plates' shear through their thickness, each t/(3G), of the two plates at the face."""
+def plate_shear(joint: Joint) -> float:
+    """Compliance per area [mm/MPa] of the shear through the thickness of both plates at the face; 0 when the file leaves it out.
+
+    Each plate adds t/(3G); the middle plate of a double lap, sheared on both faces, t/(6G).
+    """
+    if not joint.interface.plate_shear:
+        return 0.0
+    double = len(joint.plates) == 3 and joint.interface.parallel_faces == 2
     total = 0.0
-    for plate in plates[:2]:
+    for plate, inner in zip(joint.plates[:2], (False, double), strict=True):
         assert plate.material is not None
         G = bodies.shear_modulus(plate.material.youngs_modulus, plate.material.poissons_ratio)
-        total += float(thickness_compliance(plate.thickness, G))
+        total += float((inner_thickness_compliance if inner else thickness_compliance)(plate.thickness, G))
     return total

@@ -13,13 +13,18 @@ from slip.friction.faces import FaceStiffness, plate_shear
 from slip.friction.march.face import Face
 from slip.joint.joint import Joint
 from slip.joint.plates import Plate, Rectangle
-from slip.pressure.patch import Patch
+from slip.pressure.patch import Patch, from_profile
 
 Array = np.ndarray
 ALONG = 0.01  # shear across, or moment over shear times length, up to this part of the shear counts as along the strips
 CELLS = 240  # of a strip model along the overlap
+FINE = 40, 360  # rings and points around a patch that is laid out over the cells
+LEAST_COVER = 1e-6  # cells without contact carry nothing; their layer only has to be finite
 AXES = {"left": 0, "right": 0, "bottom": 1, "top": 1}
-THIN, SLENDER = 0.4, 16.0  # omega t up to which, and length over thickness from which, strips agree with elements (tests/converge)
+THIN, SLENDER = (
+    0.4,
+    16.0,
+)  # omega t up to which, and length over thickness from which, strips agree with elements (tests/converge)
 WIDE = 4.0  # patch diameter over thickness from which the shear of a plate falls about linearly through it (practice)
 
 
@@ -70,7 +75,7 @@ def _points(joint: Joint, patch: Patch, stiffness: FaceStiffness) -> Model:
     unit[np.arange(n * m), owner] = np.tile(patch.density, n)
     area = np.tile(patch.areas, n)
     faces = joint.interface.parallel_faces
-    shear = plate_shear(joint.plates)
+    shear = plate_shear(joint)
 
     def press(clamp: Array) -> Array:
         return unit @ clamp
@@ -81,7 +86,7 @@ def _points(joint: Joint, patch: Patch, stiffness: FaceStiffness) -> Model:
         touching = own > 0
         share = np.where(touching, own / np.where(touching, pressure, 1.0), 1e-9)  # of the area, where patches overlap
         layer = np.where(touching, stiffness.at(pressure, reading), np.inf)
-        bulk = np.full(n * m, 1.0 / shear)
+        bulk = np.full(n * m, 1.0 / shear if shear else np.inf)
         compliance = Springs(bulk, area * share, components=2, layer=layer)
         return Built(compliance, Face(2, points.T.copy()), lambda clamp: np.where(touching, press(clamp), 0.0))
 
@@ -101,7 +106,9 @@ def _patch_range(joint: Joint, patch: Patch) -> tuple[str, ...]:
     if 2 * patch.contact_radius >= WIDE * thickest:
         return ()
     wide, say = 2 * patch.contact_radius, joint.system.say
-    return (f"a plate of {say(thickest, 'length')} under patches {say(wide, 'length')} wide: its own give is only roughly counted",)
+    return (
+        f"a plate of {say(thickest, 'length')} under patches {say(wide, 'length')} wide: its own give is only roughly counted",
+    )
 
 
 # Two plates in lap, pulled along their length
@@ -148,11 +155,8 @@ def _lap(joint: Joint, load: Array) -> Lap | None:
         for p, t, side in zip(pair, (pair[0].thickness, inner), sides, strict=True)
         if p.material is not None
     )
-    shear = plate_shear((pair[0], Plate(pair[1].name, pair[1].material, inner, None, "")))
-    if not joint.interface.plate_shear:
-        shear = 0.0
     first, second = (EA[0], EA[1]) if pair[0].load_edge in ("right", "top") else (EA[1], EA[0])
-    return Lap(axis, start, stop, width, (first, second), shear, max(pair[0].thickness, inner), faces)
+    return Lap(axis, start, stop, width, (first, second), plate_shear(joint), max(pair[0].thickness, inner), faces)
 
 
 def _alike(first: Plate, second: Plate) -> bool:
@@ -176,7 +180,7 @@ def _strips(joint: Joint, patch: Patch, stiffness: FaceStiffness, lap: Lap, clam
 
     length = lap.stop - lap.start
     along = joint.pattern.positions[:, lap.axis]
-    unit = _line_density(along, patch, lap, length)
+    unit, cover = _line_density(along, patch, lap, length)
 
     def press(clamp: Array) -> Array:
         return unit @ clamp
@@ -185,6 +189,8 @@ def _strips(joint: Joint, patch: Patch, stiffness: FaceStiffness, lap: Lap, clam
         pressure = press(clamp)
         least = 1e-6 * pressure.max()  # cells without pressure carry nothing; their layer only has to be finite
         layer = stiffness.at(np.maximum(pressure, least), reading)
+        if stiffness.value is not None:  # it acts where the plates touch, not over the whole width
+            layer = layer * np.maximum(cover, LEAST_COVER)
         shear = lap.shear
         compliance = Strips(length, lap.width, CELLS, lap.EA, layer=layer, shear=shear)
         return Built(compliance, Face(1), press)
@@ -200,14 +206,18 @@ def _strips(joint: Joint, patch: Patch, stiffness: FaceStiffness, lap: Lap, clam
     )
 
 
-def _line_density(along: Array, patch: Patch, lap: Lap, length: float) -> Array:
-    """Pressure [MPa] in every cell, mean over the width, per newton of every bolt's clamp: (CELLS, n)."""
-    places = along[:, None] + patch.points[:, lap.axis] - lap.start
+def _line_density(along: Array, patch: Patch, lap: Lap, length: float) -> tuple[Array, Array]:
+    """Pressure [MPa] in every cell, mean over the width, per newton of every bolt's clamp: (CELLS, n); part of each cell's width that
+    the patches cover, (CELLS,)."""
+    fine = from_profile(patch.radii, patch.profile, *FINE)
+    places = along[:, None] + fine.points[:, lap.axis] - lap.start
     cells = np.clip((places / length * CELLS).astype(int), 0, CELLS - 1)
-    unit = np.zeros((CELLS, len(along)))
+    unit, cover = np.zeros((CELLS, len(along))), np.zeros(CELLS)
+    cell = lap.width * length / CELLS
     for bolt, row in enumerate(cells):
-        unit[:, bolt] = np.bincount(row, weights=patch.shares, minlength=CELLS)
-    return unit / (lap.width * length / CELLS)
+        unit[:, bolt] = np.bincount(row, weights=fine.shares, minlength=CELLS) / cell
+        cover += np.bincount(row, weights=fine.areas, minlength=CELLS) / cell
+    return unit, np.minimum(cover, 1.0)
 
 
 def _lap_range(stiffness: FaceStiffness, lap: Lap, unit: Array, clamp: Array) -> tuple[str, ...]:

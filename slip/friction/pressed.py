@@ -127,11 +127,21 @@ def slip_under(c: PressedContact, shear: float, swing: float | None = None) -> P
         reason = f"slips wholly at {gross:.6g} N; nothing beyond is computed"
         return PressedSlip(shear, gross, ready.size, peak, None, (), notes, reason)
     routes = (_closed(c, ready, shear, swing, mu), *_stepped(c, ready, shear, swing, mu))
-    edge = None
-    if ready.plane and c.shape == "cylinder":
-        shift = float(cylinder.shift_ratio(c.bulk_stress / (2 * ready.E_star), mu, peak, ready.E_star))
-        edge = float(cylinder.edge_stress(shear / gross, mu, peak, shift, c.bulk_stress))
+    edge = _edge_stress(c, ready, shear / gross, mu, peak) if c.shape == "cylinder" else None
+    if c.shape == "cylinder" and edge is None:
+        notes = (*notes, "the bulk stress moves the stick zone to the edge: no closed form for the edge stress")
     return PressedSlip(shear, gross, ready.size, peak, edge, routes, notes, "")
+
+
+def _edge_stress(c: PressedContact, ready: Pair, q: float, mu: float, peak: float) -> float | None:
+    """Stress [MPa] at the trailing edge of a cylinder, the bulk stress in the first body; None beyond the closed form's range."""
+    first = c.bodies[0]
+    strain = float(cylinder.bulk_strain(c.bulk_stress, first.youngs_modulus, first.poissons_ratio))
+    try:
+        shift = float(cylinder.shift_ratio(strain, mu, peak, ready.E_star))
+        return float(cylinder.edge_stress(q, mu, peak, shift, c.bulk_stress))
+    except ValueError:
+        return None
 
 
 def _peak(c: PressedContact, ready: Pair) -> float:
@@ -155,7 +165,8 @@ def _notes(c: PressedContact, ready: Pair) -> tuple[str, ...]:
         far = f"{FAR:g} half-widths away, {FAR * ready.size:.3g} mm"
         notes.append(f"motion is measured from points {far}; slip and energy do not depend on it")
     if c.bulk_stress:
-        notes.append("the bulk stress is in the edge stress and the closed form's shift, not in the stepped route")
+        where = "in the edge stress alone" if c.shape == "cylinder" else "not used for this shape"
+        notes.append(f"the bulk stress is {where}; motion, slip and energy are without it")
     return tuple(notes)
 
 
@@ -202,7 +213,7 @@ def _stepped(c: PressedContact, ready: Pair, shear: float, swing: float | None, 
             float(there.state.motion[0]),
             float(load[0] / stuck.state.motion[0]) / scale,
             share if ready.plane else float(np.sqrt(share)),
-            float(np.sqrt((there.state.slip**2).sum(axis=0)).max()),
+            float(np.sqrt((there.state.slip**2).sum(axis=0))[bound > 0].max()),
             float(np.sqrt((compliance.elongation(there.state.traction) ** 2).sum(axis=0)).max()),
             _stepped_energy(compliance, bound, face, swing * load / shear) / scale if swing is not None else None,
         ),

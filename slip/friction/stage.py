@@ -93,20 +93,21 @@ def _group(
     stuck = at_given.factor == 0  # what is closed at the given load cannot carry any part of it
     factor = np.where(stuck, 0.0, growing.factor)
     names = ("safety of the group, clamp held", "load factor of the group, all loads")
-    if patch is not None:
-        trace.given(f"{names[0]} (pressure patch)", "S_group", at_given.factor[:, None], "", "limit", pressure.basis)
-        trace.given(f"{names[1]} (pressure patch)", "S_group_all", factor[:, None], "", "limit", pressure.basis)
-        return at_given, factor
     left = np.where(stuck[:, None], held, _left(bound, relief, factor))
     grown = np.where(stuck[:, None], at_given.motion, growing.motion)
+    what = "bolts" if patch is None else "rings of the pressure patch"
     for name, symbol, forces, motion, found in (
         (names[0], "S_group", held, at_given.motion, at_given.factor),
         (names[1], "S_group_all", left, grown, factor),
     ):
         # no motion bounds an infinite factor: NaN keeps its line out of the explanation
         travel = np.where(np.isfinite(found)[:, None], _travel(motion, points), np.nan)
-        said = f"{name}: work of the bolts on the slip motion of unit load work"
-        trace.products(said, symbol, _columns(forces), _columns(travel), "limit", "derived")
+        parts = forces, travel
+        if patch is not None:  # the points of a ring carry alike: its force, and its mean slip
+            parts = forces * patch.ring_shares, travel.reshape(len(travel), len(patch.ring_shares), -1).mean(axis=-1)
+        said = f"{name}: work of the {what} on the slip motion of unit load work"
+        basis = "derived" if patch is None else pressure.basis
+        trace.products(said, symbol, _columns(parts[0]), _columns(parts[1]), "limit", basis)
     return at_given, factor
 
 

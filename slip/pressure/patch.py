@@ -9,6 +9,7 @@ import numpy as np
 from slip.pressure.annulus import friction_radius
 
 Array = np.ndarray
+RIM = 1e-4  # width of the ring at the rim, in parts of the patch's
 
 
 @dataclass(frozen=True, eq=False)
@@ -32,6 +33,12 @@ class Patch:
         """Pressure of the points for a unit of clamp, (m,) [1/mm^2]."""
         return self.shares / self.areas
 
+    @property
+    def ring_shares(self) -> Array:
+        """Share of the clamp of each ring, (rings,)."""
+        rings = np.unique(np.round(np.hypot(*self.points.T), 9)).size
+        return self.shares.reshape(rings, -1).sum(axis=1)
+
     def pressure(self, distance: Array) -> Array:
         """Pressure for a unit of clamp [1/mm^2] at a distance [mm] from the axis, any shape."""
         found: Array = np.interp(distance, self.radii, self.profile, left=0.0, right=0.0)
@@ -41,12 +48,13 @@ class Patch:
 def from_profile(radii: Array, profile: Array, rings: int, around: int) -> Patch:
     """The patch of a pressure that is linear between `radii` [mm], `profile` up to any factor, both (k,).
 
-    Rings lie at Gauss points of the radius, each of `around` equal points; the shares add up to 1.
+    Rings lie at Gauss points of the radius, and a hair-thin one at the rim, where slip begins; each has `around` equal points, and
+    the shares add up to 1.
     """
     inner, outer = float(radii[0]), float(radii[-1])
     places, weights = np.polynomial.legendre.leggauss(rings)
-    r = inner + (places + 1) / 2 * (outer - inner)
-    areas = 2 * np.pi * r * weights / 2 * (outer - inner)
+    r = np.append(inner + (places + 1) / 2 * (outer - inner), outer - RIM * (outer - inner))
+    areas = 2 * np.pi * r * np.append(weights / 2, RIM) * (outer - inner)
     forces = np.interp(r, radii, profile) * areas
     total = forces.sum()
     return Patch(

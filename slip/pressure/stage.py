@@ -14,7 +14,7 @@ from slip.pressure.patch import Patch, from_profile, thin_ring
 from slip.pressure.receding import Body, contact
 
 RINGS, AROUND = 12, 72  # of a single bolt under torque; 24 x 144 changes the limit load by less than 1e-3
-FEW_RINGS, FEW_AROUND = 6, 16  # of each bolt of a pattern, where partial slip sums over many points
+FEW_RINGS, FEW_AROUND = 10, 16  # of each bolt of a pattern, where partial slip sums over many points
 
 
 @dataclass(frozen=True)
@@ -41,13 +41,15 @@ def pressure(joint: Joint, turning: bool) -> Pressure:
     )
     if not (single and turning):
         return Pressure(patch, None, "", ())
-    if patch is not None:
-        return Pressure(patch, patch, "derived", ())
+    if patch is not None and all(plate.outline is not None for plate in joint.plates):
+        radius = joint.system.say(patch.friction_radius, "length")
+        note = Note("friction-radius", f"plates flat round the bolt: its torque is held at {radius}", "plate.outline")
+        return Pressure(patch, patch, "derived", (note,))
     if joint.bolt.hole_diameter is None:
         expected = "hole_diameter, the radius at which a single bolt holds a torque"
         raise Problems([InputError("missing-key", "bolt.hole_diameter", "nothing", expected, "add it", joint.file)])
     note = Note("friction-radius-hole", "torque on one bolt is held at the hole radius", "plate")
-    return Pressure(None, thin_ring(joint.bolt.hole_diameter / 2, AROUND), "practice", (note,))
+    return Pressure(patch, thin_ring(joint.bolt.hole_diameter / 2, AROUND), "practice", (note,))
 
 
 def _profile(joint: Joint) -> tuple[np.ndarray, np.ndarray] | None:
@@ -61,7 +63,17 @@ def _profile(joint: Joint) -> tuple[np.ndarray, np.ndarray] | None:
     if any(plate.material is None for plate in plates):
         return None
     found = contact(_body(plates[:1]), _body(plates[1:]), bolt.hole_diameter / 2, bolt.bearing_diameter / 2)
-    return found.radii, found.pressure
+    edges = [p.outline.edge_distance(joint.pattern.positions).min() for p in plates if p.outline is not None]
+    return _within(found.radii, found.pressure, min(edges, default=np.inf))
+
+
+def _within(radii: np.ndarray, pressure: np.ndarray, edge: float) -> tuple[np.ndarray, np.ndarray]:
+    """The profile cut at the nearest edge of a plate: what would press beyond it presses inside."""
+    if edge >= radii[-1]:
+        return radii, pressure
+    edge = max(edge, float(radii[1]))
+    kept = radii < edge
+    return np.append(radii[kept], edge), np.append(pressure[kept], np.interp(edge, radii, pressure))
 
 
 def _body(plates: tuple[Plate, ...]) -> Body:

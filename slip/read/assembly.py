@@ -88,6 +88,18 @@ def _torque(r: Reader, s: Section, bolt: Bolt | None) -> Torque:
         raise r.stop(("bolt", "thread"), "missing-key", "nothing", expected, 'add thread = "M16" in [bolt]')
     turning = r.attempt(lambda: _turning(r, s))
     frictions = r.attempt(lambda: _frictions(r, s, bolt))
+    if frictions is not None and bolt.head == "countersunk" and not s.has("nut_factor"):
+        found, expected = (
+            "frictions under a countersunk head",
+            "nut_factor, or a preload: a cone holds more torque than a flat face",
+        )
+        raise s.stop(
+            "head_friction",
+            "countersunk-torque",
+            found,
+            expected,
+            "give nut_factor = [low, high] or a measured preload",
+        )
     scatter = _scatter(s)
     if turning is None or frictions is None:
         raise Stop

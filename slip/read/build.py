@@ -64,6 +64,15 @@ def build(document: Document) -> Joint | PressedContact:
     cases = r.attempt(lambda: loading.cases(r, layout))
     axial = r.attempt(lambda: loading.axial(r, one(r, "axial"), plates, bolt, cases))
     standards = r.attempt(lambda: _standards(r))
+    if face and plates and face.parallel_faces > len(plates) - 1:
+        found, most = f"{face.parallel_faces} faces between {len(plates)} plates", f"at most {len(plates) - 1}"
+        r.fail(
+            ("interface", "parallel_faces"),
+            "faces-beyond-plates",
+            found,
+            most,
+            "correct parallel_faces, or add the plates",
+        )
     r.finish()
     assert tightening is not None
     hardware.assume_springs(r, _there(plates))

@@ -129,13 +129,19 @@ def _tabled_friction(r: Reader, path: Path_, value: Any) -> Friction:
             r, (*path, "pair"), pair, "unknown-pair", f"a pair of the table with a {lubrication} row", known, see
         )
     if wet is None:
-        r.assume("fluid", "fluid can reach the face: the lubricated row counts", "interface.fluid_can_reach")
+        r.assume(
+            "fluid",
+            "fluid can reach the face: the lower of the dry and the lubricated row counts",
+            "interface.fluid_can_reach",
+        )
     if preparation and not row["preparation"]:
         text = f"the table has no {row['pair']} for preparation {show(preparation)}: its row for any preparation"
         r.assume("friction-preparation", text, "interface.friction")
-    return Friction(
-        number(row, "low"), number(row, "high"), row["source"], row["basis"], f"{row['pair']}, {lubrication}"
-    )
+    rows = [row]
+    if wet is not False and (dry := library.friction(pair, preparation, "dry")):
+        rows.append(dry)  # a face that fluid can reach may stay dry: the lower of both rows can be defended
+    low, high = min(number(each, "low") for each in rows), max(number(each, "high") for each in rows)
+    return Friction(low, high, row["source"], row["basis"], f"{row['pair']}, {lubrication}")
 
 
 def roughness(r: Reader, path: Path_, value: Any) -> tuple[Roughness, Roughness]:

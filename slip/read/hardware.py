@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from functools import partial
 
+import numpy as np
+
 from slip.base.tables import number
 from slip.joint.bolt import Bolt, Grade, Segment, Thread
 from slip.joint.material import Material
@@ -147,7 +149,7 @@ def _tabled_grade(s: Section, thread: Thread | None) -> Grade:
 def plates(r: Reader, pattern: Pattern | None, bolt: Bolt | None) -> tuple[Plate, ...]:
     """The plates of all [[plate]]; none, or two and more."""
     sections = many(r, "plate[]")
-    built = r.every(partial(_plate, s, i, pattern) for i, s in enumerate(sections))
+    built = r.every(partial(_plate, s, i, pattern, bolt) for i, s in enumerate(sections))
     if len(built) == 1:
         expected = "no plate, or the two or more that are clamped together"
         raise r.stop(("plate",), "one-plate", "one [[plate]]", expected, "add a [[plate]] for the other plate")
@@ -156,16 +158,32 @@ def plates(r: Reader, pattern: Pattern | None, bolt: Bolt | None) -> tuple[Plate
     return tuple(built)
 
 
-def _plate(s: Section, i: int, pattern: Pattern | None) -> Plate:
+def _plate(s: Section, i: int, pattern: Pattern | None, bolt: Bolt | None) -> Plate:
     thickness = s.need("thickness", "the thickness of the plate", 'add thickness = "20 mm"')
     name, outline = s.get("name", f"plate {i + 1}"), s.get("outline")
     if pattern is not None and outline is not None:
-        outside = outline.edge_distance(pattern.positions) < 0
-        names = [bolt for bolt, out in zip(pattern.names, outside, strict=True) if out]
-        if names:
-            found = f"{', '.join(names[:8])} outside"
-            raise s.stop("outline", "bolt-outside", found, "all bolts inside", "correct outline or positions")
+        edge = outline.edge_distance(pattern.positions)
+        hole, head = ((size or 0.0) / 2 for size in _sizes(bolt))
+        if names := _nearer(pattern, edge, 0.0):
+            raise s.stop(
+                "outline", "bolt-outside", f"{names} outside", "all bolts inside", "correct outline or positions"
+            )
+        if names := _nearer(pattern, edge, hole):
+            found = f"the hole of {names} over the edge"
+            raise s.stop("outline", "hole-at-edge", found, "all holes inside", "correct outline, positions or hole")
+        if names := _nearer(pattern, edge, head):
+            s.reader.warn("head-over-edge", f"{name}: the head of {names} reaches over its edge", "plate.outline")
     return Plate(name, s.get("material"), thickness, outline, s.get("load_edge", ""))
+
+
+def _sizes(bolt: Bolt | None) -> tuple[float | None, float | None]:
+    """Hole and bearing diameter [mm] as far as they are known."""
+    return (bolt.hole_diameter, bolt.bearing_diameter) if bolt else (None, None)
+
+
+def _nearer(pattern: Pattern, edge: np.ndarray, distance: float) -> str:
+    """Names of the bolts nearer to an edge than a distance [mm], the first few."""
+    return ", ".join([name for name, e in zip(pattern.names, edge, strict=True) if e < distance][:8])
 
 
 def _check_grip(r: Reader, bolt: Bolt, plates: tuple[Plate, ...]) -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 from functools import partial
 
 from slip.joint.bolt import Bolt
@@ -14,6 +15,8 @@ from slip.read.hardware import need_springs
 from slip.read.reader import Reader, Stop, show
 from slip.read.sections import Section, many
 
+PEAK = re.compile(r"\s*(\d+(?:\.\d+)?)\s*sigma\s*,\s*unsigned\s*$")
+SIGMAS = 3.0  # peaks of a random response below this are said to be low (practice)
 COMPONENTS = ("shear", "axial", "moment")
 Ends = tuple[tuple[str, Load], ...]
 
@@ -42,6 +45,8 @@ def _case(r: Reader, s: Section, i: int, pattern: Pattern | None) -> Case:
         )
         raise s.stop("shear", "missing-key", "nothing", expected, write)
     unsigned = _unsigned(s)
+    if each and _holds_preload(r):
+        _needs_both_ends(s, unsigned)
     given = Load(tuple(s.get("shear", (0.0, 0.0))), s.get("axial", 0.0), tuple(s.get("moment", (0.0, 0.0, 0.0))))
     ends, alternating = _ends(r, s, name, given, unsigned)
     at = s.get("at")
@@ -49,7 +54,7 @@ def _case(r: Reader, s: Section, i: int, pattern: Pattern | None) -> Case:
     if height is None and not each and any(load.shear != (0.0, 0.0) for _, load in ends):
         r.assume("no-overturning", "no overturning: shear acts in the sliding face", "case.at")
     if unsigned:
-        text = f"{name}: unsigned components; every combination of signs at full value"
+        text = f"{name}: unsigned {s.get('peak').split(',')[0].strip()} peaks; every combination of signs at full value"
         r.assume("unsigned", text, "case.peak")
     place = (at[0], at[1]) if at is not None else None
     return Case(name, each, ends, place, height, alternating, unsigned, s.get("cycles"), s.get("thermal"))
@@ -71,13 +76,36 @@ def _acts_on_each(s: Section, pattern: Pattern | None) -> bool:
     return True
 
 
+def _holds_preload(r: Reader) -> bool:
+    """Whether the axial force of a bolt is its whole force, preload included."""
+    axial = r.document.tree.get("axial")
+    return isinstance(axial, dict) and axial.get("meaning") == "bolt force"
+
+
+def _needs_both_ends(s: Section, unsigned: bool) -> None:
+    """A force that holds the preload can be neither left out, nor scaled to the other end, nor turned round."""
+    s.need("axial", 'the force of each bolt in the model, for meaning = "bolt force"', 'add axial = "95 kN"')
+    if unsigned or (s.get("kind") != "static" and not s.has("other_end")):
+        key = "peak" if unsigned else "ratio"
+        found = f'{key} with meaning = "bolt force"' if s.has(key) else "no other_end"
+        write = 'write other_end, or give changes of the bolt force and meaning = "bolt force change"'
+        raise s.stop(key, "bolt-force-scaled", found, "both ends of a force that holds the preload", write)
+
+
 def _unsigned(s: Section) -> bool:
     """Whether the components are peaks of a random response, without sign and phase."""
     if not s.has("peak"):
         return False
-    if "unsigned" not in s.get("peak"):
+    form = PEAK.match(s.get("peak"))
+    if form is None:
         remedy = "write a peak with known signs as an ordinary case, without this key"
         raise s.stop_value("peak", "peak-form", '"3 sigma, unsigned"', remedy)
+    if s.get("kind") == "static":
+        remedy = 'leave out kind, or write kind = "alternating"'
+        raise s.stop_value("peak", "static-with-ratio", "no static case: a random response alternates", remedy)
+    if float(form.group(1)) < SIGMAS:
+        text = f"{s.get('name', 'a case')}: a peak of {float(form.group(1)):g} sigma is exceeded often"
+        s.reader.warn("peak-low", text, "case.peak")
     both = [key for key in ("ratio", "other_end") if s.has(key)]
     if both:
         expected = "no other end: unsigned components take every sign anyway"
@@ -122,6 +150,8 @@ def axial(
     if any(_has_axial(case) for case in cases) and share is None and introduction is None:
         text = "bolt share 0 for the clamp, the full spring ratio for the bolt force"
         r.assume("bolt-share", text, "axial.bolt_share")
+    if any(_has_axial(case) for case in cases):
+        r.assume("prying", "prying is not computed: axial forces must include it", "case.axial")
     model = s.get("model_preload"), s.get("model_bolt_share")
     return Axial(meaning, *model, share, introduction, s.get("credit_compression", False))
 
@@ -135,10 +165,21 @@ def _meaning(s: Section, cases: tuple[Case, ...] | None) -> str | None:
     if meaning == "bolt force":
         why = 'the preload in the model, for meaning = "bolt force", which holds it'
         s.need("model_preload", why, 'add model_preload = "90 kN"')
+    if meaning in ("bolt force", "bolt force change"):
+        _of_each_bolt(s, meaning, cases or ())
     if any(case.each_bolt and _has_axial(case) for case in cases or ()):
         write = 'add [axial] meaning = "external", "bolt force" or "bolt force change"'
         s.need("meaning", "what the axial force of each bolt is", write)
     return meaning
+
+
+def _of_each_bolt(s: Section, meaning: str, cases: tuple[Case, ...]) -> None:
+    """A model's bolt force is that of one bolt: it may not be shared over the bolts of a joint."""
+    for case in cases:
+        if any(load.axial for _, load in case.ends) and not case.each_bolt:
+            found = f'meaning = "{meaning}" with an axial force on the joint, in {case.name}'
+            expected = "bolt forces on each bolt, or an external axial force on the joint"
+            raise s.stop("meaning", "meaning-on-joint", found, expected, 'write acts_on = "each bolt" in the case')
 
 
 def _has_axial(case: Case) -> bool:

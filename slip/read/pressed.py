@@ -101,8 +101,13 @@ def _cases(r: Reader) -> tuple[Case, ...]:
     for i, case in enumerate(found):
         path = ("case", i)
         loads = [load for _, load in case.ends]
-        if any(load.axial or any(load.moment) for load in loads) or case.at is not None or case.unsigned:
-            remedy = "leave out axial, moment, at and peak"
+        if (
+            any(load.axial or any(load.moment) for load in loads)
+            or case.at is not None
+            or case.unsigned
+            or case.thermal is not None
+        ):
+            remedy = "leave out axial, moment, at, peak and thermal"
             raise r.stop(path, "contact-load", "more than a shear", "shear alone on a pressed contact", remedy)
         if len(loads) == 2:
             (ax, ay), (bx, by) = loads[0].shear, loads[1].shear

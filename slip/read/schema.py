@@ -146,7 +146,7 @@ KEYS: tuple[Key, ...] = (
     Key("tightening", "scatter", "share", "plus and minus, a bound; in place of method", least=0, most=1),
     Key("tightening", "scatter_ratio", "number", "highest / lowest preload; in place of method", least=1),
     Key("tightening", "scatter_sigma", "share", "standard deviation; with sigmas", least=0, most=1),
-    Key("tightening", "sigmas", "number", "how many scatter_sigma are the bound", least=0, above=True, most=6),
+    Key("tightening", "sigmas", "number", "how many scatter_sigma are the bound", least=1, most=6),
     Key(
         "tightening",
         "preload",
@@ -262,9 +262,7 @@ KEYS: tuple[Key, ...] = (
         "which standard",
         choices=("EN 1993-1-8", "AISC 360", "VDI 2230", "NASA-STD-5020"),
     ),
-    Key(
-        "standard[]", "to_standard_level", "number", "multiplies the loads to the standard's level", least=0, above=True
-    ),
+    Key("standard[]", "to_standard_level", "number", "multiplies the loads to the standard's level", least=0.5),
     Key("standard[]", "category", "choice", "EN: B (serviceability) or C (ultimate)", choices=("B", "C")),
     Key("standard[]", "slip_class", "choice", "EN: class of the faying surface", choices=("A", "B", "C", "D")),
     Key("standard[]", "slip_factor", "friction", "characteristic value, in place of a class or surface"),

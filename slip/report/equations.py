@@ -89,11 +89,13 @@ def _lines(assessment: Assessment, end: End, bolt: int) -> Iterator[Line]:
     held, grown = (_worst(assessment, end, f) for f in (slipping.group.factor, slipping.group_load_factor))
     alone, alone_grown = (_worst(assessment, end, f) for f in (slipping.force_safety, slipping.force_load_factor))
     group, force = slipping.group_trace.steps, slipping.force_trace.steps
+    face = assessment.partial.stiffness
     parts = (
         ("before load", clamp.assembly.trace.steps, state),
         ("load", clamp.states.trace.steps, state),
         ("clamp", clamp.ledger.trace.steps, state),
         ("slip of the bolt", slipping.trace.steps, state),
+        ("stiffness of the face", face.trace.steps if face else [], state),
         ("slip of the group", group[: len(group) // 2], held),
         ("slip of the group", group[len(group) // 2 :], grown),
         ("force alone", force[: len(force) // 2], alone),

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -20,6 +20,7 @@ from slip.verdict.standards import aisc360, en1993, nasa5020, vdi2230
 from slip.verdict.standards.common import Judgement
 
 Array = np.ndarray
+HAIR = 1e-6  # mm of clearance, or part of a preload, that is rounding
 
 
 class NotComparable(Exception):
@@ -47,6 +48,8 @@ class Inputs:
     moment: float
     clamp: Array
     nominal: float
+    lowest: float
+    embedding: float
     relaxation: float
     thermal_loss: float
     alternating: bool
@@ -124,6 +127,8 @@ def _inputs(
         moment=level * abs(float(states.load[row, 2])),
         clamp=raised,
         nominal=float(clamp.assembly.nominal.min()),
+        lowest=float(clamp.assembly.low.min()),
+        embedding=float(clamp.assembly.embedding.max()),
         relaxation=joint.losses.relaxation,
         thermal_loss=float(ledger.thermal_loss[row].max()),
         alternating=joint.cases[states.case[row]].alternating,
@@ -150,12 +155,25 @@ def _slip_factor(i: Inputs, word: str) -> float | str:
     return str(i.need(word))
 
 
+def _with_hole(i: Inputs, judged: Judgement, clearance: float) -> Judgement:
+    """The judgement, not met where a hole that is taken for normal is wider than the standard's normal clearance [mm]."""
+    bolt = i.joint.bolt
+    if bolt.hole_diameter is None or bolt.thread is None or (i.options.get("hole") or "normal") != "normal":
+        return judged
+    found = bolt.hole_diameter - bolt.thread.diameter
+    if found <= clearance + HAIR:
+        return judged
+    say = i.joint.system.say
+    text = f"hole clearance {say(found, 'length')} is above the {say(clearance, 'length')} of a normal hole: state the hole type"
+    return replace(judged, unmet=(*judged.unmet, text))
+
+
 def _en1993(i: Inputs) -> Judgement:
     _one_bolt_without_torque(i)
     bolt = i.joint.bolt
     if bolt.thread is None or bolt.grade is None:
         raise NotComparable("it needs thread and grade of the bolt")
-    return en1993.judge(
+    judged = en1993.judge(
         shear=i.shear,
         tension=i.tension,
         n_faces=i.joint.interface.parallel_faces,
@@ -166,6 +184,8 @@ def _en1993(i: Inputs) -> Judgement:
         hole=str(i.options.get("hole") or "normal"),
         slot=str(i.options.get("slot") or ""),
     )
+    # EN 1090-2, Table 11 (memory): 2 mm up to M24, 3 mm from M27; M12 and M14 may have 2 mm where the design allows for it
+    return _with_hole(i, judged, 2.0 if bolt.thread.diameter < 26 else 3.0)
 
 
 def _aisc360(i: Inputs) -> Judgement:
@@ -173,12 +193,15 @@ def _aisc360(i: Inputs) -> Judgement:
     bolt = i.joint.bolt
     if bolt.thread is None or bolt.grade is None:
         raise NotComparable("it needs thread and grade of the bolt")
-    return aisc360.judge(
+    group = bolt.grade.name.split("-")[0]
+    if group.removesuffix("M") not in ("A325", "A490"):
+        raise NotComparable(f"grade {bolt.grade.name} is not one of A325, A325M, A490, A490M")
+    judged = aisc360.judge(
         shear=i.shear,
         tension=i.tension,
         n_faces=i.joint.interface.parallel_faces,
         size=bolt.thread.designation,
-        group=bolt.grade.name.split("-")[0],
+        group=group,
         slip_factor=_slip_factor(i, "surface"),
         method=str(i.need("method")),
         edition=str(i.options.get("edition") or "2016"),
@@ -187,6 +210,10 @@ def _aisc360(i: Inputs) -> Judgement:
         filler_factor=float(i.options.get("filler_factor") or 1.0),  # type: ignore[arg-type]
         limit=str(i.options.get("limit") or "strength"),
     )
+    # AISC 360 Table J3.3 (memory): 1/16 in below 1 in, 1/8 in from there; 2 mm up to M22, 3 mm above
+    small = bolt.thread.diameter < (25.4 if bolt.thread.unified else 23.0)
+    wide = (1.5875, 3.175) if bolt.thread.unified else (2.0, 3.0)
+    return _with_hole(i, judged, wide[0] if small else wide[1])
 
 
 def _vdi2230(i: Inputs) -> Judgement:
@@ -205,21 +232,29 @@ def _vdi2230(i: Inputs) -> Judgement:
 def _nasa5020(i: Inputs) -> Judgement:
     if i.moment > 0:
         raise NotComparable("it has no rule for a moment about the normal")
-    return nasa5020.judge(
+    gamma, c_min = float(i.need("preload_variation")), float(i.options.get("c_min") or 1.0)  # type: ignore[arg-type]
+    judged = nasa5020.judge(
         shear=i.force,
         tension=float(i.tension.sum()),
         n_faces=i.joint.interface.parallel_faces,
         n_fasteners=i.joint.pattern.count,
         nominal_preload=i.nominal,
-        preload_variation=float(i.need("preload_variation")),  # type: ignore[arg-type]
+        preload_variation=gamma,
         friction=i.joint.interface.friction_low,
         safety_factor=float(i.need("safety_factor")),  # type: ignore[arg-type]
         fitting_factor=float(i.options.get("fitting_factor") or 1.0),  # type: ignore[arg-type]
         surface=str(i.options.get("surface") or "other"),
-        c_min=float(i.options.get("c_min") or 1.0),  # type: ignore[arg-type]
+        c_min=c_min,
         relaxation=i.relaxation,
-        thermal_loss=i.thermal_loss,
+        thermal_loss=i.thermal_loss + i.embedding,
     )
+    covered = c_min * (1 - gamma) * i.nominal
+    if i.lowest < covered * (1 - HAIR):
+        text = f"Gamma {gamma:g} does not cover the file's own lowest preload, {i.joint.system.say(i.lowest, 'force')}"
+        judged = replace(judged, unmet=(*judged.unmet, text))
+    if i.embedding:
+        judged = replace(judged, notes=(*judged.notes, "Embedding is taken off with the thermal loss."))
+    return judged
 
 
 APPLY: dict[str, Callable[[Inputs], Judgement]] = {

@@ -32,10 +32,15 @@ class Check:
     solved: bool = True
 
     def factor(self, grows: str) -> float | None:
-        """The factor that is held against the requirement."""
-        if self.check == "separation" or grows == "all loads":
-            return self.load_factor
-        return self.safety
+        """The factor that is held against the requirement: the one whose share of it is the reserve."""
+        both = (self.load_factor, self.safety) if grows == "all loads" else (self.safety, self.load_factor)
+        given = [factor for factor in both if factor is not None]
+        held = [
+            f
+            for f in given
+            if self.required and self.reserve_factor is not None and f / self.required == self.reserve_factor
+        ]
+        return next(iter([*held, *given]), None)
 
 
 def first_least(values: np.ndarray) -> int:

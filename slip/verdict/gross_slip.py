@@ -38,9 +38,9 @@ def judge_end(joint: Joint, clamp: Clamp, slip: Slip, case: int, end: str) -> En
     rows = np.flatnonzero((clamp.states.case == case) & (np.array(clamp.states.end) == end))
     required, given = joint.required, joint.cases[case]
     least = required.alternating if given.alternating else required.static
-    bolt_factor = slip.bolt_load_factor if required.grows == "all loads" else slip.bolt_safety
-    group_factor = slip.group_load_factor if required.grows == "all loads" else slip.group.factor
-    force_factor = slip.force_load_factor if required.grows == "all loads" else slip.force_safety
+    bolt_factor = deciding(joint, slip.bolt_safety, slip.bolt_load_factor)
+    group_factor = deciding(joint, slip.group.factor, slip.group_load_factor)
+    force_factor = deciding(joint, slip.force_safety, slip.force_load_factor)
     state, bolt = divmod(first_least(bolt_factor[rows].ravel()), joint.pattern.count)
     state = int(rows[state])
     group, force = int(rows[first_least(group_factor[rows])]), int(rows[first_least(force_factor[rows])])
@@ -50,7 +50,7 @@ def judge_end(joint: Joint, clamp: Clamp, slip: Slip, case: int, end: str) -> En
     def check(what: str, bolt: str, safety: Array, growing: Array) -> Check:
         # Each factor is the smallest of its kind; state and bolt are those of the one held against the requirement.
         smallest = safety[rows].min(), growing[rows].min()
-        return _check(required, given, end, what, bolt, *smallest, least, sliding)
+        return _check(required, given, end, what, bolt, *smallest, least, sliding, joint.axial.credit_compression)
 
     checks = [
         check("per_bolt", name, slip.bolt_safety, slip.bolt_load_factor),
@@ -72,6 +72,13 @@ def judge_end(joint: Joint, clamp: Clamp, slip: Slip, case: int, end: str) -> En
     return End(case, end, state, bolt, group, own, tuple(checks + separation))
 
 
+def deciding(joint: Joint, safety: Array, growing: Array) -> Array:
+    """The factor that is held against the requirement; where compression is credited the smaller, since it grows with the load."""
+    if joint.axial.credit_compression:
+        return np.minimum(safety, growing)
+    return growing if joint.required.grows == "all loads" else safety
+
+
 def _own_state(factors: Array, clamps: Array, rows: Array) -> int:
     """The state of one bolt's smallest factor; of factors that tie, that of the lowest clamp."""
     tied = np.flatnonzero(~(factors > factors[first_least(factors)] * (1 + TIE)))  # also where that is not a number
@@ -88,11 +95,12 @@ def _check(
     growing: float,
     least: float,
     sliding: bool,
+    credited: bool,
 ) -> Check:
     """One gross-slip check. Comparison is made with the unrounded factor; NaN never holds."""
     decides = required.decides.replace(" ", "_") == what
     safety, growing = float(safety), float(growing)
-    factor = growing if required.grows == "all loads" else safety
+    factor = min(safety, growing) if credited else growing if required.grows == "all loads" else safety
     reason = LONE if what == "force_only" else ""
     if not sliding:  # nothing to resist, also where a bolt is open: separation judges that
         safety = growing = factor = float("inf")

@@ -7,7 +7,7 @@ from collections.abc import Mapping
 from slip.friction.pressed import NO_SHEAR, PressedSlip
 from slip.joint.contact import PressedContact
 from slip.verdict.checks import Check
-from slip.verdict.stage import Verdict, conclude
+from slip.verdict.stage import Verdict, against, conclude
 
 
 def pressed_verdict(contact: PressedContact, slips: Mapping[tuple[int, str], PressedSlip]) -> Verdict:
@@ -44,5 +44,5 @@ def _true_slip(contact: PressedContact, most: float, case: str, end: str, found:
         return Check("true_slip", case, end, "", None, None, None, 0.0, False, True, found.reason)
     slip = max((route.true_slip for route in found.routes if route.true_slip is not None), default=0.0)
     reserve = most / slip if slip > 0 else float("inf")
-    said = f"{contact.system.say(slip, 'length')} against {contact.system.say(most, 'length')}"
+    said = against(slip, most)
     return Check("true_slip", case, end, "", None, None, None, reserve, bool(slip <= most), True, said)

@@ -83,8 +83,13 @@ def _true_slip(joint: Joint, partial: Partial, most: float, case: int, end: str)
         )
     slip = max((reading.true_slip for reading in found.readings), default=0.0)
     reserve = most / slip if slip > 0 else float("inf")
-    said = f"{joint.system.say(slip, 'length')} against {joint.system.say(most, 'length')}"
+    said = against(slip, most)
     return Check("true_slip", name, end, "", None, None, None, reserve, bool(slip <= most), True, said)
+
+
+def against(slip: float, most: float) -> str:
+    """A true slip and its limit [mm] in micrometres."""
+    return f"{1e3 * slip:.3g} um against {1e3 * most:.3g} um"
 
 
 def _not_solved(joint: Joint) -> list[Check]:

@@ -120,10 +120,10 @@ def test_beyond_gross_slip_nothing_is_computed(run_check):
 
 
 def test_limit_of_true_slip(run_check):
-    """The step's largest true slip, 0.27 um here (the closed form's at the rim: 3 mu P/(16 a G*) of it), against the file's own limit."""
+    """The step's largest true slip inside the contact, 0.15 um here, against the file's own limit."""
     text = contact(SPHERE) + '[required]\ntrue_slip = "{} um"\n'
     assert run_check(text.replace("{}", "0.3"))[1] == 0
-    found, code = run_check(text.replace("{}", "0.2"))
+    found, code = run_check(text.replace("{}", "0.1"))
     assert code == 1 and found["governing"]["check"] == "true_slip"
 
 

@@ -16,6 +16,7 @@ KEY = re.compile(r"^# (\w+) = ")
 HEADER = re.compile(r"^(# )?(\[\[?[\w.]+\]\]?)$")
 # Keys that need or exclude another: alone they are a fault of the input, told in words. table.key -> words of the fault
 COMPANIONS = {
+    "case[].peak": "no static case",
     "tightening.nut_factor": "frictions",
     "tightening.tool_accuracy": "scatter",
     "tightening.scatter": "method",
