@@ -191,7 +191,7 @@ KEYS: tuple[Key, ...] = (
         "interface",
         "fluid_can_reach",
         "flag",
-        "the lubricated row counts when friction comes from the table",
+        "the lower of dry and lubricated counts when friction comes from the table",
         default="true",
     ),
     Key("interface", "run_in_friction", "friction", "after running in, for fretting stress only", later=True),

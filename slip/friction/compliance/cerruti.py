@@ -50,8 +50,7 @@ def wrapped(kernel: Array, padded: tuple[int, int], sign: int) -> Array:
 
 
 def circulant(kernel: Array, sign: int) -> Array:
-    """The circulant nearest to the convolution on the bare grid: each offset and its image, weighted by how often they
-    occur.
+    """The circulant nearest to the convolution on the bare grid: offsets and their images, weighted by how often they occur.
 
     Positive where the convolution is (Chan's averaging along the diagonals).
     """
@@ -65,14 +64,15 @@ def circulant(kernel: Array, sign: int) -> Array:
 
 
 def times(waves: list[Array], wave: Array) -> Array:
-    """Product of the 1 x 1 matrices [xx], the diagonal ones [xx, yy] or the full ones [xx, yy, xy] with transforms
-    (components, ...).
-    """
+    """Products of matrices, given as [xx], [xx, yy] or [xx, yy, xy], with transforms (components, ...)."""
     out = np.empty_like(wave)
     for component, product in enumerate(out):
         np.multiply(waves[component], wave[component], out=product)
-        if len(waves) == 3:
-            product += waves[2] * wave[1 - component]
+    if len(waves) == 3:
+        mixed = np.multiply(waves[2], wave[1])
+        out[0] += mixed
+        np.multiply(waves[2], wave[0], out=mixed)
+        out[1] += mixed
     return out
 
 

@@ -74,8 +74,7 @@ class HalfSpace:
         return sf.irfft(wave, n=py, axis=-1)[..., :ny]
 
     def near_inverse(self, extra: Array, fixed: Mask) -> Callable[[Array], Array]:
-        """Inverse of the nearest circulant with the smallest extra compliance in it, blended with the diagonal where
-        there is more.
+        """Inverse of the nearest circulant with the least extra compliance in it, blended with the diagonal where there is more.
 
         Exact for a periodic face without fixed points and with the same extra compliance everywhere.
         """
@@ -103,9 +102,7 @@ class HalfSpace:
 
     @cached_property
     def _largest(self) -> Array:
-        """Sums of absolute values along the rows [mm/MPa]; |x y|/r^3 is at most half of 1/r, in which the rows sum to
-        2A + N.
-        """
+        # |x y|/r^3 is at most half of 1/r, and 1/r is both kernels' sum over 2A + N.
         rows = np.empty((self.components, *self.shape))
         for component in range(self.components):
             unit = np.zeros_like(rows)

@@ -20,7 +20,7 @@ Solver = Callable[[Problem, Point, float, int], Point]
 
 # Tuning, held by tests on the number of applications.
 COARSE_PART = 1e-2  # of its residual at the start, a coarse grid's answer may keep
-COARSE_TOL = 1e-3  # and it has to be at least as good as this, ...
+COARSE_TOL = 1e-4  # and it has to be at least as good as this, ...
 COARSE_STEPS = 20  # in no more steps than these, or it is not used: its load may be more than the coarse face can carry
 
 
