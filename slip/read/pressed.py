@@ -13,6 +13,7 @@ from slip.read.document import Document
 from slip.read.reader import Reader, Stop
 from slip.read.sections import Section, many, one
 
+Sizes = tuple[float | None, float | None, float | None]  # radius, flat width, length [mm]
 ROUND = ("sphere",)
 FLAT = ("flat", "rounded flat")
 PARTS = ("bolt", "tightening", "losses", "plate", "pattern", "axial", "standard")
@@ -31,10 +32,7 @@ def pressed(r: Reader, document: Document) -> PressedContact:
                 "a contact or a joint with bolts",
                 "remove one",
             )
-    section = one(r, "contact")
-    shape = r.attempt(lambda: section.need("shape", "the profile", f"add shape, one of {', '.join(SHAPES)}"))
-    sizes = r.attempt(partial(_sizes, section, shape)) if shape else None
-    force = r.attempt(lambda: section.need("normal_force", "the force that presses", 'add normal_force = "2 kN"'))
+    profile = r.attempt(partial(_profile, r))
     bodies = r.attempt(partial(_bodies, r))
     face = r.attempt(lambda: interface(r, one(r, "interface")))
     if "parallel_faces" in document.tree.get("interface", {}):
@@ -42,9 +40,9 @@ def pressed(r: Reader, document: Document) -> PressedContact:
         r.fail(path, "contact-load", "parallel_faces", "one face of a pressed contact", "leave it out")
     demands = r.attempt(lambda: required(r, one(r, "required")))
     cases = r.attempt(partial(_cases, r))
-    bulk = r.attempt(lambda: float(section.get("bulk_stress", 0.0)))
     r.finish()
-    assert shape and sizes and force and bodies and face and demands and cases and bulk is not None
+    assert profile and bodies and face and demands and cases
+    shape, sizes, force, bulk = profile
     return PressedContact(
         title=document.tree.get("title", ""),
         system=r.system,
@@ -65,7 +63,18 @@ def pressed(r: Reader, document: Document) -> PressedContact:
     )
 
 
-def _sizes(section: Section, shape: str) -> tuple[float | None, float | None, float | None]:
+def _profile(r: Reader) -> tuple[str, Sizes, float, float]:
+    """Shape, sizes, normal force and bulk stress of [contact]."""
+    section = one(r, "contact")
+    shape = section.need("shape", "the profile", f"add shape, one of {', '.join(SHAPES)}")
+    sizes = r.attempt(partial(_sizes, section, shape))
+    force = section.need("normal_force", "the force that presses", 'add normal_force = "2 kN"')
+    if sizes is None:
+        raise Stop
+    return shape, sizes, force, float(section.get("bulk_stress", 0.0))
+
+
+def _sizes(section: Section, shape: str) -> Sizes:
     """Radius, flat width and length as the shape needs them."""
     radius = width = length = None
     if shape != "flat":

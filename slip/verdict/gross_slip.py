@@ -100,7 +100,7 @@ def _check(
     """One gross-slip check. Comparison is made with the unrounded factor; NaN never holds."""
     decides = required.decides.replace(" ", "_") == what
     safety, growing = float(safety), float(growing)
-    factor = min(safety, growing) if credited else growing if required.grows == "all loads" else safety
+    factor = float(np.minimum(safety, growing)) if credited else growing if required.grows == "all loads" else safety
     reason = LONE if what == "force_only" else ""
     if not sliding:  # nothing to resist, also where a bolt is open: separation judges that
         safety = growing = factor = float("inf")

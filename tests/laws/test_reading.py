@@ -68,7 +68,7 @@ positions = [
   [-80, 60], [0, 60], [80, 60]  # a comment
 ]
 [axial]
-meaning = "bolt force"
+meaning = "external"
 model_preload = "90 kN"
 model_bolt_share = 0.15
 load_introduction = 0.5

@@ -154,6 +154,7 @@ def test_nothing_to_do_gives_numbers():
         made = step(Springs([1e3, 1e3]), [1.0, 0.0], LINE, **given)
         assert made.dissipation == made.energy == made.balance == made.residual == 0.0
         assert not made.state.traction.any() and np.isfinite(made.state.motion).all()
+        assert made.slipping.tolist() == [False, True]  # an open point holds nothing
 
 
 def test_the_limit_alone_needs_no_scipy():
