@@ -1,5 +1,5 @@
-"""What a step costs, in applications of the compliance: held here so that a change of the tuned constants shows. Wall times stand
-in tests/speed/step.py."""
+"""What a step costs, in applications of the compliance: held here so that a change of the tuned constants shows. Wall
+times stand in tests/speed/step.py."""
 
 import time
 from math import pi

@@ -139,7 +139,8 @@ def test_small_load_is_linear_with_8_a_gstar():
 
 
 def test_poisson_ratio_brings_the_transverse_traction():
-    """nu = .3: loop energy -.4 %, transverse traction 3.5 % of mu p0 (by an independent trial at q = .6; digits as given).
+    """nu = .3: loop energy -.4 %, transverse traction 3.5 % of mu p0 (by an independent trial at q = .6; digits as
+    given).
 
     Against the uncoupled answer on the same grid, so that the grid's own error drops out."""
     load, made = 0.6 * MU * P, {}

@@ -1,7 +1,8 @@
 """Three hundred random problems: all converge, and what they claim is computed again from the compliance alone.
 
-Discs, rings, separate and speckled patches with open points; layers of none, one, scattered and pressure-like stiffness; several steps
-with slip before and changing bounds; loads from nothing to .9999 of the gross-slip load, half of them with a moment.
+Discs, rings, separate and speckled patches with open points; layers of none, one, scattered and pressure-like
+stiffness; several steps with slip before and changing bounds; loads from nothing to .9999 of the gross-slip load, half
+of them with a moment.
 """
 
 import numpy as np
@@ -156,7 +157,9 @@ def body_load(body, face, t):
 
 
 def balance(body, face, before, made):
-    """1/2 (Q_old + Q).dd = dE + sum area 1/2 (q_old + q).ds, its error over the work that is done or stored; before: the last state."""
+    """1/2 (Q_old + Q).dd = dE + sum area 1/2 (q_old + q).ds, its error over the work that is done or stored; before:
+    the last state.
+    """
     q, q_old = made.state.traction, before.traction
     load, load_old = body_load(body, face, q), body_load(body, face, q_old)
     energy, energy_old = (0.5 * (body.area * t * body.apply(t)).sum() for t in (q, q_old))

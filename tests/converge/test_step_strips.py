@@ -1,9 +1,10 @@
 """The step on two strips against shear-lag theory, derived here once more from equilibrium and stretch.
 
-Strip 1 is pulled at x = L, strip 2 at x = 0. N1 grows by the traction per length, N2 = P - N1, and the relative displacement g of the
-faces changes by g' = N1/EA1 - N2/EA2 = D N1 - P/EA2 with D = 1/EA1 + 1/EA2. Where the faces stick g = N1'/k, so that
-N1'' = w^2 (N1 - N_inf) with w^2 = k D, N_inf = P/(EA2 D); where they slip N1' = q_l. Everything below follows from these and from
-continuity. Basis derived. N, mm; tolerances are observed orders or the printed digits of the numbers.
+Strip 1 is pulled at x = L, strip 2 at x = 0. N1 grows by the traction per length, N2 = P - N1, and the relative
+displacement g of the faces changes by g' = N1/EA1 - N2/EA2 = D N1 - P/EA2 with D = 1/EA1 + 1/EA2. Where the faces stick
+g = N1'/k, so that N1'' = w^2 (N1 - N_inf) with w^2 = k D, N_inf = P/(EA2 D); where they slip N1' = q_l. Everything
+below follows from these and from continuity. Basis derived. N, mm; tolerances are observed orders or the printed digits
+of the numbers.
 """
 
 from math import cosh, sinh, sqrt, tanh
@@ -57,7 +58,9 @@ def one_end(EA1, EA2, k, q_l, L, P):
 
 
 def loop(motion_of, P):
-    """Energy per cycle +-P of a system with like unloading (Masing): 4 P f(P) - 8 integral of f, by Gauss's rule on panels."""
+    """Energy per cycle +-P of a system with like unloading (Masing): 4 P f(P) - 8 integral of f, by Gauss's rule on
+    panels.
+    """
     x, weight = np.polynomial.legendre.leggauss(12)
     edges = np.linspace(0, P, 41)
     area = sum(
@@ -195,7 +198,8 @@ def test_compliance_error_with_shear_through_the_thickness(nu, per_area, percent
     [(3000.0, 4.13, 4.00, 0.13), (12000.0, 2.5677, 1.00, 1.57), (120000.0, 2.1168, 0.1, 2.017)],
 )
 def test_split_of_the_end_motion(k_t, total, elastic, true):
-    """At 30 kN, relative motion at the overlap's ends in um = elastic slip + true slip; the split is read off the state.
+    """At 30 kN, relative motion at the overlap's ends in um = elastic slip + true slip; the split is read off the
+    state.
 
     The ends lie half a cell outside the outer cells' middles."""
     cells = 2000
@@ -219,7 +223,9 @@ def test_split_of_the_end_motion(k_t, total, elastic, true):
 
 @pytest.mark.parametrize("stiffness", [(8e6, 8e6), (8e6, 2e6), (2e6, 8e6), (np.inf, 2e6), (2e6, np.inf)])
 def test_running_sums_against_the_kernel(stiffness):
-    """Means over cells of (L - max(x, xi))/EA1 + min(x, xi)/EA2, whose kink costs h/6 on the diagonal; and the near inverse."""
+    """Means over cells of (L - max(x, xi))/EA1 + min(x, xi)/EA2, whose kink costs h/6 on the diagonal; and the near
+    inverse.
+    """
     rng = np.random.default_rng(3)
     n, (EA1, EA2), layer = 40, stiffness, np.exp(rng.normal(size=40)) * 3000
     body = Strips(80.0, 60.0, n, stiffness, layer=layer, shear=3e-4)

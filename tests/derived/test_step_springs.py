@@ -1,4 +1,5 @@
-"""The march on springs against what can be said by hand: sliders, walking under a clamp that changes sides, parallel sliders.
+"""The march on springs against what can be said by hand: sliders, walking under a clamp that changes sides, parallel
+sliders.
 
 Basis derived (checks 31 and 33 of the collection, in SI there); N, mm, mJ here. k = 1e8 N/m = 1e5 N/mm.
 """
@@ -19,9 +20,11 @@ LINE, K = Face(1), 1e5
 
 @pytest.mark.parametrize(("Q", "walk"), [(200.0, 0.0), (240.0, 0.0), (250.0, 0.2e-3), (300.0, 1.2e-3)])
 def test_walking_under_alternating_clamp(Q, walk):
-    """Two contacts, clamp 1000 (1 +- .6 sin wt) in turn, mu .3, shear Q held: 2 [Q - 2 mu N0 (1 - e)]/k per cycle (check 31).
+    """Two contacts, clamp 1000 (1 +- .6 sin wt) in turn, mu .3, shear Q held: 2 [Q - 2 mu N0 (1 - e)]/k per cycle
+    (check 31).
 
-    Q - 2 mu N0 (1 - e): at the turn the weak side slides until it carries mu N0 (1 - e), its partner's spring takes the rest.
+    Q - 2 mu N0 (1 - e): at the turn the weak side slides until it carries mu N0 (1 - e), its partner's spring takes the
+    rest.
     """
     assert walk == pytest.approx(2 * max(0.0, Q - 2 * 0.3 * 1000 * 0.4) / K)
     n = 256

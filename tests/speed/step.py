@@ -1,5 +1,5 @@
-"""Prints what the frictional step costs: applications of the compliance and of its near inverse, wall times beside one bare
-application. Asserts nothing. Run as a script; OMP_NUM_THREADS=1 keeps the comparison fair."""
+"""Prints what the frictional step costs: applications of the compliance and of its near inverse, wall times beside one
+bare application. Asserts nothing. Run as a script; OMP_NUM_THREADS=1 keeps the comparison fair."""
 
 import sys
 import time

@@ -149,6 +149,23 @@ def test_shapes_and_values_without_meaning(build):
         build()
 
 
+def test_state_of_another_compliance_is_refused():
+    """C q comes along with the state; taken to stiffer bodies it would be wrong without a sign of it."""
+    made = step(Springs([1e3, 1e3]), 1.0, LINE, load=1.0)
+    assert step(Springs([1e3, 1e3]), 1.0, LINE, made.state, load=1.5).state.motion == pytest.approx([0.75e-3])
+    with pytest.raises(ValueError, match="another compliance"):
+        step(Springs([2e3, 1e3]), 1.0, LINE, made.state, load=1.5)
+
+
+def test_one_point_at_the_origin_cannot_be_turned():
+    """A face of one closed point: its rotation is free and stays where it is; a moment is more than it carries."""
+    body, face = Springs([1e3, 1e3], components=2), Face(2, np.array([[0.0, 5.0], [0.0, 0.0]]))
+    made = step(body, [1.0, 0.0], face, load=[0.3, 0.4, 0.0])
+    assert made.state.motion == pytest.approx([0.3e-3, 0.4e-3, 0.0])
+    with pytest.raises(SlipsWholly):
+        step(body, [1.0, 0.0], face, load=[0.3, 0.4, 0.1])
+
+
 def test_nothing_to_do_gives_numbers():
     for given in ({"load": 0.0}, {"motion": 0.0}):
         made = step(Springs([1e3, 1e3]), [1.0, 0.0], LINE, **given)
@@ -159,5 +176,8 @@ def test_nothing_to_do_gives_numbers():
 
 def test_the_limit_alone_needs_no_scipy():
     """`import slip.friction.march.limit` and the step itself stay light; the half-space and the strips bring scipy."""
-    code = "import sys, slip.friction.march.limit, slip.friction.march.history; sys.exit(any(m.startswith('scipy') for m in sys.modules))"
+    code = (
+        "import sys, slip.friction.march.limit, slip.friction.march.history; "
+        "sys.exit(any(m.startswith('scipy') for m in sys.modules))"
+    )
     assert subprocess.run([sys.executable, "-c", code], check=False).returncode == 0

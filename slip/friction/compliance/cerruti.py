@@ -16,8 +16,7 @@ def cell_kernel(shape: tuple[int, int], cell: tuple[float, float], A: float, N: 
     Returns u_x from q_x (A/r + N x^2/r^3), u_y from q_y (A/r + N y^2/r^3) and u_y from q_x (N x y/r^3), each over 2 pi
     and integrated over the cell. The first two are even in both offsets, the last is odd in each.
 
-    The integrals over x and y: of x^2/r^3 it is y asinh(x/|y|), of y^2/r^3 x asinh(y/|x|), of xy/r^3 -r, of 1/r the sum
-    of the first two.
+    Integrals over x and y: y asinh(x/|y|) of x^2/r^3, x asinh(y/|x|) of y^2/r^3, -r of x y/r^3; of 1/r the first two.
     Source: Cerruti's solution (elasticity). Basis: derived.
     """
     x = ((np.arange(shape[0] + 1) - 0.5) * cell[0])[:, None]
@@ -50,7 +49,7 @@ def wrapped(kernel: Array, padded: tuple[int, int], sign: int) -> Array:
 
 
 def circulant(kernel: Array, sign: int) -> Array:
-    """The circulant nearest to the convolution on the bare grid: offsets and their images, weighted by how often they occur.
+    """The circulant nearest to the convolution on the bare grid: offsets and their images, weighted by their numbers.
 
     Positive where the convolution is (Chan's averaging along the diagonals).
     """

@@ -74,7 +74,7 @@ class HalfSpace:
         return sf.irfft(wave, n=py, axis=-1)[..., :ny]
 
     def near_inverse(self, extra: Array, fixed: Mask) -> Callable[[Array], Array]:
-        """Inverse of the nearest circulant with the least extra compliance in it, blended with the diagonal where there is more.
+        """Inverse of the nearest circulant with the least extra compliance, blended with the diagonal where it is more.
 
         Exact for a periodic face without fixed points and with the same extra compliance everywhere.
         """

@@ -14,10 +14,9 @@ from slip.friction.compliance.protocol import Array
 def layer_compliance(layer: ArrayLike | None, shape: tuple[int, ...]) -> Array:
     """1/k_t over the field [mm/MPa], 0 without a layer.
 
-    layer: tangential stiffness per area k_t [N/mm^3] > 0, scalar or of `shape`; inf where a cell has none; None for no
-    layer at all.
-    Raises ValueError for another shape, or a stiffness that is not positive: what is open needs a bound of 0, not a
-    layer of 0.
+    layer: tangential stiffness per area k_t [N/mm^3] > 0, scalar or of `shape`; inf where a cell has none; None for
+    none at all.
+    Raises ValueError for another shape, or a stiffness that is not positive.
     """
     k = np.asarray(np.inf if layer is None else layer, dtype=float)
     if k.ndim and k.shape != shape:
@@ -30,8 +29,7 @@ def layer_compliance(layer: ArrayLike | None, shape: tuple[int, ...]) -> Array:
 
 
 def side_by_side(compliance: Array, mean: Callable[[Array], Array]) -> Array:
-    """Stiffness [N/mm^3] of coarse cells whose parts move together, so that their stiffnesses add; inf where a part is
-    rigid.
+    """Stiffness [N/mm^3] of coarse cells whose parts move together, so that it adds; inf where a part is rigid.
 
     compliance (*field) [mm/MPa]; mean: over the parts of each coarse cell.
     """

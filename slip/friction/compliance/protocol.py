@@ -18,8 +18,7 @@ class Transfer:
     """The same bodies on a coarser grid, and the way there and back.
 
     compliance: the coarser one.
-    restrict: (..., *field) -> (..., *coarse), mean over the fine cells of each coarse cell; cells beyond the edge count
-    as 0.
+    restrict: (..., *field) -> (..., *coarse), mean of the fine cells of each coarse one, 0 for those beyond an edge.
     prolong: (..., *coarse) -> (..., *field), the coarse cell's value in each of its fine cells.
     """
 
@@ -57,8 +56,9 @@ class Compliance(Protocol):
         ...
 
     def near_inverse(self, extra: Array, fixed: Mask) -> Callable[[Array], Array]:
-        """Approximate inverse of C + extra, extra (*field) in mm/MPa >= 0, on the points that are not `fixed`;
-        symmetric and positive.
+        """An inverse near to that of C + extra on the points that are not `fixed`; symmetric and positive there.
+
+        extra (*field) [mm/MPa] >= 0.
         """
         ...
 

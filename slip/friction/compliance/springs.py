@@ -14,8 +14,8 @@ from slip.friction.compliance.protocol import Array, Mask
 class Springs:
     """Diagonal compliance: 1/stiffness and the layer's 1/k_t in series at each point.
 
-    stiffness (*field): of the body per area [N/mm^3], >= 0 not allowed, inf for a rigid one; a spring of K [N/mm] has
-    K/area. area (*field) or scalar [mm^2]; tractions times area are the forces of the points.
+    stiffness (*field): of the body per area [N/mm^3] > 0, inf for a rigid one; a spring of K [N/mm] has K/area.
+    area (*field) or scalar [mm^2]; tractions times area are the forces of the points.
     layer: k_t [N/mm^3], scalar or (*field); None for none.
 
     Raises ValueError for shapes or values without meaning, InputError (no-compliance) where a point has neither spring

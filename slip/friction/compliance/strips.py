@@ -1,6 +1,4 @@
-"""Two elastic strips that overlap and are pulled along x (shear lag): each stretches under the force that friction has
-handed to it.
-"""
+"""Two elastic strips that overlap, pulled along x (shear lag): each stretches under what friction hands to it."""
 
 from __future__ import annotations
 
@@ -22,28 +20,28 @@ LEAST_LOCAL = 1e-3  # local compliance that the near inverse takes at least, in 
 def through_thickness(t: ArrayLike, G: ArrayLike) -> Array:
     """Compliance per area [mm/MPa] that shear through its thickness gives a plate with traction on one face.
 
-    t: thickness [mm]; G: shear modulus [MPa]; they broadcast. A linear fall of the shear stress over the thickness:
-    t/(3G). Both
-    plates add theirs. Range: w t < 0.3 with w the inverse of the decay length, else too small a correction.
+    t: thickness [mm]; G: shear modulus [MPa]; they broadcast. A linear fall of the shear stress over the thickness
+    gives t/(3G). Both plates add theirs.
+    Range: w t < 0.3 with w the inverse of the decay length, else too small a correction.
     Source: Tsai, Oplinger, Morton 1998. Basis: memory, confirmed by a two-dimensional finite-element model.
     """
     return np.asarray(t, dtype=float) / (3.0 * np.asarray(G, dtype=float))
 
 
 class Strips:
-    """Strip 1 pulled at x = length, strip 2 at x = 0; the motion is that of the pulled ends away from each other, its
-    load their pull.
+    """Strip 1 pulled at x = length, strip 2 at x = 0: the motion is that of the pulled ends apart, the load their pull.
 
     length, width: of the overlap [mm]. cells: of equal length along x. stiffness: (EA1, EA2) [N]; inf is rigid.
     layer: k_t [N/mm^3], scalar or (cells,), inf where there is none; None for none.
-    shear: compliance per area of both plates' shear through the thickness [mm/MPa], see `through_thickness`; part of
-    the bodies.
+    shear: compliance per area [mm/MPa] of both plates' shear through the thickness (`through_thickness`), a part of the
+    bodies.
 
     A pull P that has passed into strip 1 up to x stretches it by P/EA1 and leaves the rest to strip 2:
     C(x, xi) = (length - max(x, xi))/EA1 + min(x, xi)/EA2 per force, here as exact means over the cells.
 
     Range: strips that do not bend; cells that resolve the decay length (w h <= 0.1, w^2 = k_t width (1/EA1 + 1/EA2)).
-    Raises ValueError for values without meaning, InputError (no-compliance) for rigid strips without a layer.
+    Raises ValueError for values without meaning, InputError for rigid strips without a layer (no-compliance) and for
+    cells longer than the decay length (cells-too-coarse).
     Source: shear-lag theory (Volkersen). Basis: derived.
     """
 
@@ -89,11 +87,10 @@ class Strips:
         return stretch + self._beside * q
 
     def near_inverse(self, extra: Array, fixed: Mask) -> Callable[[Array], Array]:
-        """The inverse of C + extra on the points that are not fixed; exact where the layer yields more than a
-        thousandth of a cell.
+        """The inverse of C + extra on the points that are not fixed, exact on cells that resolve the decay length.
 
-        Seen from the pulled end of the strip that yields more, y in cells, C = both min(y, eta) + lesser (cells - y -
-        eta) + local. The first part has a tridiagonal inverse, the second is of rank two.
+        From the pulled end of the softer strip, y in cells, C = both min(y, eta) + lesser (cells - y - eta) + local.
+        The first part has a tridiagonal inverse, the second is of rank two.
         """
         local = self._beside + extra
         free = ~fixed

@@ -16,12 +16,10 @@ Array = NDArray[np.float64]
 
 @dataclass(frozen=True, eq=False)
 class Split:
-    """The relative motion of the faces, point by point [mm]: motion = slip + elongation + bulk, each (components,
-    *field).
+    """The relative motion of the faces [mm]: motion = slip + elongation + bulk, each (components, *field).
 
-    motion: of the bodies as a whole, B d. slip: true slip, which dissipates. elongation: of the layer, elastic slip
-    that comes back.
-    bulk: elastic displacement of the bodies.
+    motion: of the bodies as a whole, B d. slip: true slip, which dissipates.
+    elongation: of the layer, elastic slip that comes back. bulk: elastic displacement of the bodies.
     """
 
     motion: Array

@@ -59,8 +59,9 @@ class Face:
         return np.append(total, (self.positions[0] * forces[1] - self.positions[1] * forces[0]).sum())
 
     def gauge(self, weight: Array) -> Callable[[Array], float]:
-        """How a load (freedoms,) counts as one force [N]: its moment about the middle of `weight` (*field), over the
-        spread of that.
+        """How a load (freedoms,) counts as one force [N].
+
+        Its moment is taken about the middle of `weight` (*field) and divided by the spread of that.
         """
         if self.positions is None or not weight.any():
             return lambda load: float(np.linalg.norm(load[: self.components]))
@@ -72,18 +73,13 @@ class Face:
             return lambda load: float(np.hypot(load[0], load[1]))
 
         def size(load: Array) -> float:
-            force, moment = (
-                float(np.hypot(load[0], load[1])),
-                float(load[2] - middle[0] * load[1] + middle[1] * load[0]),
-            )
-            return max(force, abs(moment) / spread)
+            moment = float(load[2] - middle[0] * load[1] + middle[1] * load[0])
+            return max(float(np.hypot(load[0], load[1])), abs(moment) / spread)
 
         return size
 
     def vector(self, given: ArrayLike, what: str) -> Array:
-        """A motion or load as an array (freedoms,); a number serves where there is one freedom. Raises ValueError
-        otherwise.
-        """
+        """A motion or load as an array (freedoms,), from a number where there is one freedom; else ValueError."""
         vector = np.atleast_1d(np.asarray(given, dtype=float))
         if vector.shape != (self.freedoms,) or not np.isfinite(vector).all():
             raise ValueError(f"the {what} must be {self.freedoms} finite number(s), not {given!r}")

@@ -1,6 +1,4 @@
-"""A start from coarser grids: the coarse problem that asks for the same correction, solved, and its change brought
-back.
-"""
+"""A start from coarser grids: the coarse problem that asks for the same correction, its change brought back."""
 
 from __future__ import annotations
 
@@ -27,8 +25,8 @@ COARSE_STEPS = 20  # in no more steps than these, or it is not used: its load ma
 def from_coarse(problem: Problem, point: Point, tol: float, solver: Solver) -> Point:
     """`point`, moved by what the coarser grids find where that is a better start; never raises.
 
-    The coarse target is set so that the coarse problem asks for nothing where the fine one asks for nothing: at the
-    means of the fine tractions its slip is the mean of the fine slip. So it serves cold and warm starts alike.
+    The coarse target is set so that at the means of the fine tractions the coarse slip is the mean of the fine slip:
+    the coarse problem asks for nothing where the fine one does. So it serves cold and warm starts alike.
     """
     transfer = problem.compliance.coarser()
     if transfer is None or point.residual <= tol:

@@ -11,7 +11,7 @@ from slip.base.errors import InputError, SlipError
 from slip.friction.march.face import Face
 from slip.friction.march.limit import limit
 from slip.friction.march.newton import Active, Border, newton_change
-from slip.friction.march.problem import Point, Problem, length, within
+from slip.friction.march.problem import MOST_NEWTON, Point, Problem, length, within
 from slip.friction.march.settle import returned, settle
 
 Array = NDArray[np.float64]
@@ -28,9 +28,7 @@ EASIER = 10.0  # ... and falls by this where a motion was good, by its square wh
 
 
 class SlipsWholly(SlipError):
-    """The load is more than friction can carry. `load` is the one at which the face slips as a whole, `factor` its part
-    of the given.
-    """
+    """The load is more than friction carries; `load` is the part `factor` of it at which the face slips as a whole."""
 
     code = "slips-wholly"
 
@@ -44,10 +42,9 @@ class SlipsWholly(SlipError):
 
 
 def check_limit(face: Face, strength: Array, load: Array) -> None:
-    """Raise SlipsWholly where `load` (freedoms,) reaches what points of `strength` bound times area (*field) [N] can
-    carry.
+    """Raise SlipsWholly where `load` (freedoms,) reaches what the points can carry.
 
-    Raises InputError (no-clamp) where no point can carry anything.
+    strength (*field): bound times area of each [N]. Raises InputError (no-clamp) where none can carry anything.
     """
     total = float(strength.sum())
     if not total > 0.0:
@@ -72,9 +69,7 @@ def check_limit(face: Face, strength: Array, load: Array) -> None:
 
 
 def _carried_elastically(face: Face, strength: Array, load: Array) -> bool:
-    """Whether forces in proportion to strength and to a rigid motion carry the load within their bounds: a cheap proof
-    for most loads.
-    """
+    """Whether forces in proportion to strength and to a rigid motion carry the load: a cheap proof for most loads."""
     columns = face.columns(strength.shape)
     W = np.array([[float((strength * (a * b).sum(0)).sum()) for b in columns] for a in columns])
     size = np.sqrt(np.diag(W))
@@ -85,21 +80,19 @@ def _carried_elastically(face: Face, strength: Array, load: Array) -> bool:
 
 
 def carry(problem: Problem, point: Point, tol: float, most: int) -> Point:
-    """Tractions that carry the problem's load and the motion with them, to a residual of `tol`; what was reached after
-    `most` steps.
+    """Tractions and motion under the problem's load, to a residual of `tol`; what has been reached after `most` steps.
 
-    Newton's steps change tractions and motion together as long as that halves the residual every few steps. Where it
-    does not, one step
+    Newton's steps change both together as long as that halves the residual every few steps. Where it does not, one step
     of the convex minimisation over the motion alone is taken: its value is that of the problem at a given motion, its
     slope the load that is not carried, and radial return cannot lose any load there.
     """
     best, waited, damping = point, 0, DAMPING
     for _ in range(most):
-        if point.residual <= tol:
-            return point
+        if point.residual <= tol or problem.tally.newton >= MOST_NEWTON:
+            break
         change = newton_change(problem, point, Active(problem, point), tol)
         if change is not None:
-            dq, du = returned(problem, point, change.traction, change.displacement)
+            dq, du = returned(problem, point, change.traction, change.displacement, tol)
             point = problem.at(point.traction + dq, point.displacement + du, point.motion + change.motion)
         waited += 1
         if point.residual <= 0.5 * best.residual:

@@ -33,8 +33,7 @@ class Change:
 class Active:
     """The set of slipping points, the projector P on what may move, and the curvature of the discs.
 
-    Along the rim the traction turns with the slip s, which adds s.n/b to the compliance there (n the traction's
-    direction).
+    Along the rim the traction turns with the slip s: that adds s.n/b to the compliance, n the traction's direction.
     """
 
     def __init__(self, problem: Problem, point: Point) -> None:
@@ -78,12 +77,11 @@ class Border:
         self.answers = [active.near_inverse(column) for column in self.columns]
         self.stiffness = np.array([[self.problem.product(a, b) for b in self.answers] for a in self.columns])
         stuck = self.problem.closed / np.sqrt(self.problem.largest)
-        self._size = np.array([self.problem.norm(stuck * column) for column in columns])
+        sizes = np.array([self.problem.norm(stuck * column) for column in columns])
+        self._size = np.where(sizes > 0.0, sizes, 1.0)
 
     def motion_under(self, load: Array, more: Array | float = 0.0) -> Array:
-        """The motion (freedoms,) under a load, by the near inverse's tangent stiffness and some more; none where both
-        hardly resist.
-        """
+        """The motion (freedoms,) under a load, by the near inverse's tangent stiffness and some more."""
         scaled = (self.stiffness + more) / np.outer(self._size, self._size)
         values, vectors = np.linalg.eigh(0.5 * (scaled + scaled.T))
         firm = values > TIED
@@ -112,8 +110,7 @@ def _sum(factors: Array, fields: list[Array], start: Array) -> Array:
 
 
 def newton_change(problem: Problem, point: Point, active: Active, tol: float) -> Change | None:
-    """Solve P (C + curvature) P dq - P B dd = P s by conjugate gradients, where a load is given with B^T dq = what is
-    short of it.
+    """Conjugate gradients for P (C + curvature) P dq - P B dd = P s, with B^T dq = what is short of a given load.
 
     None where nothing can move.
     """

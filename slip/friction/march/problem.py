@@ -1,9 +1,8 @@
 """The convex problem of one step on one grid, and how far a point of it is from the answer.
 
-Sought are tractions q in Coulomb's discs |q| <= b that minimise 1/2 q.C q - q.target, with target = B d - slip before
-and the product sum area a.b; where a load is given, the motion that carries it is sought with them. What is left over,
-s = target - C q, is the slip
-of the step: nothing where a point sticks, along q where it slips.
+Sought are tractions q in Coulomb's discs |q| <= b that minimise 1/2 q.C q - q.(B d - slip before), with the product
+sum area a.b; where a load is given, the motion d that carries it is sought with them. What is left over,
+s = B d - slip before - C q, is the slip of the step: nothing where a point sticks, along q where it slips.
 """
 
 from __future__ import annotations
@@ -21,6 +20,8 @@ from slip.friction.march.face import Face
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
+MOST_NEWTON = 1000  # Newton steps in all on all grids, after which a step is given up; 10 are usual, 300 were seen
+
 
 def length(a: Array) -> Array:
     """Euclidean length over the first axis."""
@@ -36,9 +37,7 @@ def within(q: Array, bound: Array) -> Array:
 
 @dataclass
 class Tally:
-    """Work done so far, coarser grids by their share of the points: applications of C, of its near inverse, Newton
-    steps.
-    """
+    """Work so far: applications of C and its near inverse, coarser grids by their share of points; Newton steps."""
 
     applications: float = 0.0
     near_inverses: float = 0.0
@@ -49,10 +48,10 @@ class Tally:
 class Problem:
     """One grid's problem.
 
-    bound (*field) [MPa]; target (components, *field) [mm] at the motion 0; load (freedoms,) [N, N mm], None when the
-    motion is given. displacement_scale [mm, by the product's norm] and load_scale [N]: residuals are relative to no
-    less than these.
-    gauge: a load as one number [N]. share: points of this grid over those of the finest. tally: counts the work.
+    bound (*field) [MPa]; target (components, *field): slip at the motion 0 without tractions [mm];
+    load (freedoms,) [N, N mm], None when the motion is given.
+    displacement_scale [mm, by the product's norm], load_scale [N]: residuals are relative to no less than these.
+    gauge: a load as one number [N]. tally: counts the work. share: points of this grid over those of the finest.
     """
 
     compliance: Compliance
@@ -114,8 +113,8 @@ class Problem:
 class Point:
     """Tractions within their bounds, C times them, and a motion, with what is wrong with them.
 
-    slip = target + B d - C q [mm]. pull: what a projected-gradient step would add to the tractions, 0 at the answer
-    [MPa].
+    slip = target + B d - C q [mm].
+    pull: what a projected-gradient step would add to the tractions [MPa], 0 at the answer.
     scale: size of the displacements [mm, by the product's norm]. error: norm of largest times pull, over the scale.
     short: load that is not carried yet (0 when the motion is given); load_error: its size over the load's scale.
     """
