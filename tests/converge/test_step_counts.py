@@ -17,7 +17,7 @@ FACE = Face(2)
 
 
 def sphere(cells, nu, radius=1.0, layer=None):
-    """Smooth sphere on cells x cells, the patch over 1/1.1 of the grid; bound of unit peak, G* the same for every nu."""
+    """Smooth sphere on cells x cells, its patch over 1/1.1 of the grid; bound of unit peak, one G* for every nu."""
     cell = 2.2 * radius / cells
     x = (np.arange(cells) + 0.5) * cell - 1.1 * radius
     bound = np.sqrt(np.maximum(0.0, 1 - np.add.outer(x**2, x**2) / radius**2))

@@ -106,7 +106,7 @@ def test_convolution_is_symmetric_and_positive(nu):
 
 
 def test_sphere_force_stick_and_energy_converge():
-    """q = .5: c/a .79370, delta .46950 um, W 1.07238e-3 mJ; uncoupled, where Mindlin's and Deresiewicz's form is exact."""
+    """q = .5: c/a .79370, delta .46950 um, W 1.07238e-3 mJ (check 20); uncoupled, where Mindlin's form is exact."""
     load = 0.5 * MU * P
     assert [
         pytest.approx(0.18663, abs=5e-6),
@@ -159,7 +159,7 @@ def test_poisson_ratio_brings_the_transverse_traction():
 
 @pytest.mark.parametrize("nu", [0.0, 0.3, 0.5])
 def test_stuck_disc_shift_and_torsion(nu):
-    """Shift 8 a G* (check 22: 9.5023e5 N/mm for steel, a = 5) and torsion (16/3) a^3/sum(1/G), which must not feel nu."""
+    """Shift 8 a G* (check 22: 9.5023e5 N/mm for steel, a = 5); torsion (16/3) a^3/sum(1/G), which must not feel nu."""
     a, G_ = 5.0, 210e3 / 2 / (1 + nu)
     shift, turn = [], []
     for n in (32, 64, 128):

@@ -43,7 +43,8 @@ def show(what, steps, stamps, one):
     took = 1e3 * np.mean([b - a for a, b in pairwise(stamps)])
     print(
         f"{what:52s} {np.mean(applications):6.1f} (most {max(applications):5.1f}) near inverses "
-        f"{np.mean([made.near_inverses for made in steps]):5.1f}, Newton {np.mean([made.newton for made in steps]):4.1f}, "
+        f"{np.mean([made.near_inverses for made in steps]):5.1f}, "
+        f"Newton {np.mean([made.newton for made in steps]):4.1f}, "
         f"{took:8.1f} ms = {took / one:5.1f} bare of {one:.2f} ms, balance {max(made.balance for made in steps):.0e}",
         flush=True,
     )
