@@ -3,11 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 from pathlib import Path
 from typing import TYPE_CHECKING, Literal
 
 from slip.base.notes import Note
+from slip.base.records import record
 from slip.clamp.stage import Clamp, clamp
 from slip.friction.partial import Partial
 from slip.friction.stage import Slip, slip
@@ -18,7 +18,7 @@ from slip.read.build import read
 from slip.verdict.stage import Verdict, verdict
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Assessment:
     """What every stage found for a joint."""
 
@@ -50,7 +50,7 @@ if TYPE_CHECKING:
     from slip.friction.pressed import PressedSlip
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class PressedAssessment:
     """What was found for a pressed contact: partial slip by case and end, the verdict."""
 

@@ -9,9 +9,9 @@ from __future__ import annotations
 import math
 import re
 from collections.abc import Callable, Mapping
-from dataclasses import dataclass
 from typing import Any, TypeVar
 
+from slip.base.records import record
 from slip.base.tables import Row, find
 
 F = TypeVar("F", bound=Callable[..., Any])
@@ -36,7 +36,7 @@ FUNCTIONS: dict[str, Any] = {
 }
 
 
-@dataclass(frozen=True)
+@record
 class Formula:
     """`symbol = text` with the unit of the result, the key of its source in data/sources.csv, the basis and the range it holds in."""
 

@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from slip.base.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Note:
     """`code` names the entry in docs/messages.md, `text` is one sentence, `key` the joint-file key that would settle it."""
 

@@ -11,9 +11,10 @@ from dataclasses import dataclass, field
 from typing import Any
 
 from slip.base.formulas import Formula
+from slip.base.records import record
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Step:
     """One use of a formula. Values and result broadcast to (states, bolts); `source` and `basis` override the formula's
     own where a value came out of a table or file."""

@@ -6,7 +6,8 @@ A dimension is the tuple of powers of (force, length, temperature step, time). M
 from __future__ import annotations
 
 import re
-from dataclasses import dataclass
+
+from slip.base.records import record
 
 Dimension = tuple[int, int, int, int]
 
@@ -104,7 +105,7 @@ class UnitError(ValueError):
         self.remedy = remedy
 
 
-@dataclass(frozen=True)
+@record
 class System:
     """A consistent set of units: factor to the inside units and name, per base dimension; `name` is what a file declares."""
 

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from slip.base.notes import Note
+from slip.base.records import record
 from slip.base.tables import number, table
 from slip.base.trace import Trace
 from slip.clamp import losses as loss
@@ -23,7 +22,7 @@ from slip.joint.tightening import Preload, Rises, Torque
 Array = np.ndarray
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Assembly:
     """The bolts without load, each array (n,): assembly preload low, nominal, high [N] and which statement set its ends;
     embedding, relaxation, thermal loss and gain [N]; the bolt's share of an axial load, low and high end."""

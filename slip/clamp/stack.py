@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 
 from slip.base.notes import Note
+from slip.base.records import record
 from slip.base.trace import Trace
 from slip.clamp import springs as spring
 from slip.clamp import thread as screw
@@ -19,7 +19,7 @@ Array = np.ndarray
 SLENDER = (0.5, 10.0)  # grip over bearing diameter in which the slope of the cone was fitted (memory)
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Springs:
     """Compliances in mm/N: the bolt's stiffest and softest reading, the plates' per bolt (n,), the frustum's second opinion."""
 

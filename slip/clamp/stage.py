@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from slip.base.errors import InputError, Problems
 from slip.base.notes import Note
+from slip.base.records import record
 from slip.base.trace import Trace
 from slip.clamp import thread as screw
 from slip.clamp import tightening as tight
@@ -23,7 +22,7 @@ TORSION_FRICTION = (
 FREE_THREAD = 0.01  # a piece of the bolt this near to the minor diameter is thread: its stress area counts
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Ledger:
     """Arrays (S, n) in N over states and bolts; yield_use is a share, None without a grade; bearing_pressure in MPa, None
     where the bearing face is not known. relief: clamp taken by the axial load, negative where compression is credited."""
@@ -42,7 +41,7 @@ class Ledger:
     trace: Trace
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Clamp:
     """What the clamp stage found: the bolts before load, the load states, the ledger, and what must be said."""
 

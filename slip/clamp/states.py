@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
 from itertools import product
 
 import numpy as np
 
 from slip.base.errors import InputError, Problems
+from slip.base.records import record
 from slip.base.trace import Trace
 from slip.clamp import working
 from slip.joint.joint import Axial, Joint
@@ -20,7 +20,7 @@ STRAIGHT = 1e-9  # smaller over larger second moment below which the bolts stand
 ROUNDING = 1e-12  # an arm or a moment smaller than this part of what it is the difference of is none
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class States:
     """S load states over n bolts. case: index of the case, (S,); end: "given" or "other" of each state.
 

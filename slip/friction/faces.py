@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
+from slip.base.records import record
 from slip.base.trace import Trace
 from slip.clamp.losses import ra_from_rz, rq_from_ra
 from slip.friction.closed import bodies, rough
@@ -18,7 +17,7 @@ GAMMA = 0.48  # of k_n = p/(gamma h_rms): the value commonly used (memory); 0.40
 SCATTER = 2.0  # measured faces lie within this factor of the law, either way, unless measured themselves
 
 
-@dataclass(frozen=True)
+@record
 class FaceStiffness:
     """k_t of the face as three readings (low, typical, high): `slope` [1/mm] times pressure, or `value` [N/mm^3] at any pressure."""
 

@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass, field
+from dataclasses import field
 
 import numpy as np
 
+from slip.base.records import record
 from slip.friction.compliance.protocol import Compliance
 from slip.friction.compliance.springs import Springs
 from slip.friction.faces import FaceStiffness, plate_shear
@@ -28,7 +29,7 @@ THIN, SLENDER = (
 WIDE = 4.0  # patch diameter over thickness from which the shear of a plate falls about linearly through it (practice)
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Built:
     """A model at given clamps: compliance, the face's rigid motions, and press(clamp (n,) [N]) -> pressure (*field) [MPa] on its points."""
 
@@ -37,7 +38,7 @@ class Built:
     press: Callable[[Array], Array]
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Model:
     """A model by name, why it was chosen and what its range says; `faces` shares the load between parallel faces.
 
@@ -114,7 +115,7 @@ def _patch_range(joint: Joint, patch: Patch) -> tuple[str, ...]:
 # Two plates in lap, pulled along their length
 
 
-@dataclass(frozen=True)
+@record
 class Lap:
     """Two strips: axis 0 or 1 along the pull, ends of the overlap and width [mm], EA [N], thickness shear [mm/MPa], shares of the load."""
 

@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from slip.base.errors import NotConverged
+from slip.base.records import record
 from slip.clamp.stage import Clamp
 from slip.friction.faces import face_stiffness
 from slip.friction.march.step import State, Step, step
@@ -24,7 +23,7 @@ STUCK, TINY = 1e6, 1e-300  # bounds this many times the largest hold everything;
 FULL = 1 - 1e-9  # traction over bound from which a point counts as slipping
 
 
-@dataclass(frozen=True)
+@record
 class Motions:
     """What one reading of the stiffness gives. Loads [N] are resultant shears at which the first point, and all, slip as the load grows
     with the clamp held; factors are the same over the load. stiffness [N/mm] before slip, along the shear.
@@ -43,7 +42,7 @@ class Motions:
     energy_per_cycle: float | None
 
 
-@dataclass(frozen=True)
+@record
 class PartialSlip:
     """One end of a case: the model and why it was taken, the motions at low, typical and high stiffness; or `reason` why there are none."""
 

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
+from slip.base.records import record
 from slip.friction.closed import bodies, cylinder, flat, sphere, strip, superposition
 from slip.friction.closed.superposition import Profile
 from slip.friction.compliance.dense import Dense
@@ -26,7 +25,7 @@ FULL = 1 - 1e-9  # traction over bound from which a point counts as slipping
 STUCK = 1e6  # bounds this many times the largest hold everything
 
 
-@dataclass(frozen=True)
+@record
 class Route:
     """What one route gives for shear Q: motion of the bodies [mm], stiffness before slip [N/mm], stick size over contact size,
     largest true slip and elastic slip [mm] (None where the route does not tell), energy per cycle [N mm], None without a cycle."""
@@ -40,7 +39,7 @@ class Route:
     energy_per_cycle: float | None
 
 
-@dataclass(frozen=True)
+@record
 class PressedSlip:
     """Partial slip under one shear [N]: gross slip load [N]; size [mm] and peak pressure [MPa] of the contact; edge_stress [MPa] of a
     plane contact, None else; both routes, empty with a `reason` where the load slips wholly or a route has no answer."""
@@ -55,7 +54,7 @@ class PressedSlip:
     reason: str
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Pair:
     """The contact made ready: profile per mm of length where plane, rho of the rule, moduli, length (1 for a round contact)."""
 

@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
+from slip.base.records import record
 from slip.base.trace import Trace
 from slip.clamp.stage import Clamp
 from slip.clamp.working import resultant
@@ -18,7 +17,7 @@ from slip.pressure.stage import Pressure
 Array = np.ndarray
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Slip:
     """Gross slip over S states and n bolts. safety holds the clamp, load_factor lets the whole load grow.
 

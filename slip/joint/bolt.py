@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
+from slip.base.records import record
 from slip.joint.material import Material
 
 
-@dataclass(frozen=True)
+@record
 class Thread:
     """A thread by its designation; diameter and pitch in mm. `unified` selects the stress area of ASME B1.1."""
 
@@ -19,7 +18,7 @@ class Thread:
     basis: str
 
 
-@dataclass(frozen=True)
+@record
 class Grade:
     """Strengths in MPa: lowest yield and tensile strength, and the nominal tensile strength that structural standards use."""
 
@@ -31,7 +30,7 @@ class Grade:
     basis: str
 
 
-@dataclass(frozen=True)
+@record
 class Segment:
     """A piece of the bolt inside the grip: diameter and length in mm."""
 
@@ -39,7 +38,7 @@ class Segment:
     length: float
 
 
-@dataclass(frozen=True)
+@record
 class Bolt:
     """One bolt of the pattern; all bolts are alike. Lengths in mm; None where the file is silent and no table can say.
 

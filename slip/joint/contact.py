@@ -2,9 +2,8 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 from slip.base.notes import Note
+from slip.base.records import record
 from slip.base.units import System
 from slip.joint.joint import Required
 from slip.joint.loads import Case
@@ -14,7 +13,7 @@ from slip.joint.surface import Interface
 SHAPES = ("sphere", "cylinder", "flat", "rounded flat")
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class PressedContact:
     """What a file with [contact] says, in inside units.
 

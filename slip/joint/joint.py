@@ -3,9 +3,9 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass
 
 from slip.base.notes import Note
+from slip.base.records import record
 from slip.base.units import System
 from slip.joint.bolt import Bolt
 from slip.joint.loads import Case
@@ -15,7 +15,7 @@ from slip.joint.surface import Interface
 from slip.joint.tightening import Losses, Preload, Torque
 
 
-@dataclass(frozen=True)
+@record
 class Axial:
     """What an axial force means and who carries it. Shares between 0 and 1; None where not given.
 
@@ -30,7 +30,7 @@ class Axial:
     credit_compression: bool
 
 
-@dataclass(frozen=True)
+@record
 class Required:
     """What the result must reach. decides: "per bolt" or "group"; grows: "all loads" or "shear"; true_slip [mm] or None."""
 
@@ -42,7 +42,7 @@ class Required:
     true_slip: float | None
 
 
-@dataclass(frozen=True)
+@record
 class Standard:
     """A standard that must be met as well: its name, a label that tells two entries of one name apart, and the entry's values."""
 
@@ -52,7 +52,7 @@ class Standard:
     to_standard_level: float | None
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Joint:
     """Everything that the file says, in inside units, with what was assumed and warned while reading."""
 

@@ -2,13 +2,13 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from slip.base.records import record
 
 Vector2 = tuple[float, float]
 Vector3 = tuple[float, float, float]
 
 
-@dataclass(frozen=True)
+@record
 class Load:
     """Forces [N] on the upper plate and couples [N mm]: shear (x, y), axial (tension positive), moment (x, y, normal)."""
 
@@ -22,7 +22,7 @@ class Load:
         return Load((vx, vy), f, (mx, my, mz))
 
 
-@dataclass(frozen=True)
+@record
 class Case:
     """One load case. `ends` holds ("given", Load) and for an alternating case ("other", Load).
 

@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from slip.base.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Material:
     """Elastic constants of a material; `None` where neither the file nor the table gives a value.
 

@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
+
+from slip.base.records import record
 
 Array = np.ndarray
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Pattern:
     """Bolt names and positions, shape (n, 2) in mm, in file order."""
 

@@ -2,16 +2,15 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
+from slip.base.records import record
 from slip.joint.material import Material
 
 Array = np.ndarray
 
 
-@dataclass(frozen=True)
+@record
 class Rectangle:
     """Outline with corners (x0, y0) and (x1, y1) in mm."""
 
@@ -26,7 +25,7 @@ class Rectangle:
         return np.minimum.reduce([x - self.x0, self.x1 - x, y - self.y0, self.y1 - y])
 
 
-@dataclass(frozen=True)
+@record
 class Ring:
     """Outline between two circles about the origin, diameters in mm."""
 
@@ -40,7 +39,7 @@ class Ring:
         return np.minimum(outer, r - self.inner_diameter / 2) if self.inner_diameter > 0 else outer
 
 
-@dataclass(frozen=True)
+@record
 class Plate:
     """One clamped plate: thickness in mm, outline or None where not given, edge through which its load enters or ''."""
 

@@ -2,10 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from slip.base.records import record
 
 
-@dataclass(frozen=True)
+@record
 class Roughness:
     """Roughness of one face as the file gives it: label Ra, Rq or Rz, value in mm."""
 
@@ -13,7 +13,7 @@ class Roughness:
     value: float
 
 
-@dataclass(frozen=True)
+@record
 class Interface:
     """The face that must not slip. Friction low and high with their source and basis; `parallel_faces` share the load side by side.
 

@@ -2,17 +2,16 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
+from slip.base.records import record
 from slip.joint.material import Material
 
 Array = np.ndarray
 Range = tuple[float, float]
 
 
-@dataclass(frozen=True)
+@record
 class Scatter:
     """Plus and minus `bound` (a share) about the nominal preload; `text` says where it comes from, `given` whether the file said it."""
 
@@ -23,7 +22,7 @@ class Scatter:
     given: bool
 
 
-@dataclass(frozen=True)
+@record
 class Torque:
     """Tightening by torque [N mm]. Either both frictions or the nut factor; either a scatter or the accuracy of the tool (a share)."""
 
@@ -37,7 +36,7 @@ class Torque:
     source: str
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Preload:
     """Assembly preload given as lowest and highest per bolt, shape (n,) in N; `nominal` where a scatter made them, else None.
 
@@ -52,7 +51,7 @@ class Preload:
     source: str
 
 
-@dataclass(frozen=True)
+@record
 class Rises:
     """Temperature rises since assembly in K: of the bolt and of each plate."""
 
@@ -60,7 +59,7 @@ class Rises:
     plates: tuple[float, ...]
 
 
-@dataclass(frozen=True)
+@record
 class Losses:
     """What the preload loses: embedding by the table (None), a length [mm] or a force [N]; relaxation as a share; thermal.
 

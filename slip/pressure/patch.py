@@ -2,17 +2,16 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
+from slip.base.records import record
 from slip.pressure.annulus import friction_radius
 
 Array = np.ndarray
 RIM = 1e-4  # width of the ring at the rim, in parts of the patch's
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Patch:
     """Points (m, 2) [mm] from the bolt's axis, ring after ring, with their shares (m,) of the clamp and areas (m,) [mm^2].
 

@@ -8,11 +8,10 @@ edge of contact, so contact radius and shape do not depend on the force (recedin
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from slip.base.errors import NotConverged
+from slip.base.records import record
 
 Array = np.ndarray
 GAUSS = np.polynomial.legendre.leggauss(3)
@@ -23,7 +22,7 @@ REACH = 4.0  # plate radius beyond the bearing ring, in thicknesses of the thick
 MOST_CHANGES = 60  # of the set in contact; 5 to 15 are usual
 
 
-@dataclass(frozen=True)
+@record
 class Body:
     """One plate: thickness [mm], Young's modulus [MPa], Poisson's ratio."""
 
@@ -32,7 +31,7 @@ class Body:
     poissons_ratio: float
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Contact:
     """Pressure of a unit force over the face: radii (m,) [mm] and pressure (m,) [1/mm^2] there, linear between them; zero
     from contact_radius [mm] on."""

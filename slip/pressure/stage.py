@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
 from slip.base.errors import InputError, Problems
 from slip.base.notes import Note
+from slip.base.records import record
 from slip.joint.joint import Joint
 from slip.joint.plates import Plate
 from slip.pressure.patch import Patch, from_profile, thin_ring
@@ -17,7 +16,7 @@ RINGS, AROUND = 12, 72  # of a single bolt under torque; 24 x 144 changes the li
 FEW_RINGS, FEW_AROUND = 10, 16  # of each bolt of a pattern, where partial slip sums over many points
 
 
-@dataclass(frozen=True)
+@record
 class Pressure:
     """What the pressure stage found. patch: of one bolt by the contact of its plates, None where nothing needs it or the file does not
     describe it; torque_patch: what a torque on a single bolt is held by, None where there is none; basis: of the torque patch."""

@@ -6,13 +6,13 @@ import csv
 import hashlib
 import io
 import re
-from dataclasses import dataclass
 from functools import partial
 from pathlib import Path
 
 import numpy as np
 
 from slip.base.errors import Problems
+from slip.base.records import record
 from slip.base.units import KINDS, UnitError, parse_unit
 from slip.joint.pattern import Pattern
 from slip.read.document import cut, decode, read_bytes
@@ -30,7 +30,7 @@ WRITTEN = {
 HEADER = re.compile(r"\s*(\w+)\s*(?:[\[(]\s*([^\])]*)\s*[\])])?\s*$")
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class BoltList:
     """A pattern, and per bolt the lowest and highest preload [N], shape (n,), where a list gives them.
 

@@ -6,18 +6,18 @@ import codecs
 import hashlib
 import re
 import tomllib
-from dataclasses import dataclass
 from functools import cached_property
 from pathlib import Path
 from typing import Any
 
 from slip.base.errors import InputError, Problems
+from slip.base.records import record
 from slip.read.lines import Path_, key_lines
 
 LARGEST = 20_000_000  # bytes; a joint file is a few kilobytes, larger inputs belong into a table
 
 
-@dataclass(frozen=True)
+@record
 class Document:
     """A parsed file: shown name, folder (for files it names), text, the TOML tree, the digest of its bytes."""
 

@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from functools import partial
 from typing import Any
 
+from slip.base.records import record
 from slip.base.tables import number
 from slip.base.units import KINDS, UnitError, parse_unit, split
 from slip.joint.bolt import Thread
@@ -37,7 +37,7 @@ PRESENT = {
 }
 
 
-@dataclass(frozen=True)
+@record
 class Friction:
     """Interface friction low and high; the source and basis are those of the table row, or '' when the file gives the numbers."""
 
@@ -48,7 +48,7 @@ class Friction:
     pair: str
 
 
-@dataclass(frozen=True)
+@record
 class PreloadForm:
     """[tightening] preload as typed: ranges by bolt name ('' for all that are not named), or one nominal."""
 

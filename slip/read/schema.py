@@ -6,11 +6,12 @@ reader of its own in read.forms. `shape` is one, range (two), one or range, or a
 
 from __future__ import annotations
 
-from dataclasses import dataclass
 from math import inf
 
+from slip.base.records import record
 
-@dataclass(frozen=True)
+
+@record
 class Key:
     """One key of the joint file. Limits are in inside units; `above` excludes the limit itself. `later`: checked, not used yet."""
 

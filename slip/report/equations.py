@@ -4,13 +4,13 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Iterator
-from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 
 from slip.assess import Assessment
 from slip.base.errors import InputError, Problems
+from slip.base.records import record
 from slip.base.tables import Row, table
 from slip.base.trace import Step
 from slip.joint.joint import Joint
@@ -21,7 +21,7 @@ from slip.verdict.gross_slip import End
 FILE = "file", "given"
 
 
-@dataclass(frozen=True)
+@record
 class Line:
     """One line of the explanation. `put_in` is plain arithmetic that evaluates to `result`; `group` names its part."""
 
@@ -41,7 +41,7 @@ class Line:
         return dict(self.__dict__)
 
 
-@dataclass(frozen=True)
+@record
 class Explanation:
     """What is explained, and its lines in the order of the calculation; everything in N, mm, MPa."""
 

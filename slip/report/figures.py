@@ -6,7 +6,6 @@ import io
 import warnings
 from collections.abc import Iterator
 from contextlib import contextmanager
-from dataclasses import dataclass
 from typing import Any
 
 import matplotlib
@@ -18,6 +17,7 @@ from matplotlib.lines import Line2D
 from matplotlib.patches import Circle, Patch, Rectangle
 
 from slip.assess import Assessment
+from slip.base.records import record
 from slip.base.units import System
 from slip.joint import plates
 from slip.report.words import plain
@@ -28,7 +28,7 @@ NAMED = 30  # bolts up to which each one bears its name; beyond, only the weakes
 WIDTH = 4.4  # inches: text of 9 points stays readable on the narrowest screen
 
 
-@dataclass(frozen=True)
+@record
 class Ink:
     """Colours of a picture, told apart by the colour-blind and in grey; the ground is left clear."""
 
@@ -43,7 +43,7 @@ LIGHT = Ink(line="#1d2327", faint="#8a949c", shear="#0a66a8", weakest="#b3400e",
 DARK = Ink(line="#e3e7ea", faint="#7f8b93", shear="#6db6ee", weakest="#ff9a76", centre="#c9a6f5")
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class View:
     """What the picture shows, in the reader's unit of length: bolts (n, 2), instant centre or None, hole radius, ranges of x and y."""
 

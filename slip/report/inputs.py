@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
+from slip.base.records import record
 from slip.base.units import UNITS, System
 from slip.joint.bolt import Bolt
 from slip.joint.joint import Axial, Joint, Required
@@ -20,7 +19,7 @@ Pair = tuple[str, str]
 TEXT = 300  # characters of a text that the file gives
 
 
-@dataclass(frozen=True)
+@record
 class Group:
     """One heading of the inputs with its names and values."""
 

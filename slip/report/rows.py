@@ -4,12 +4,13 @@ from __future__ import annotations
 
 import math
 from collections.abc import Sequence
-from dataclasses import dataclass, field
+from dataclasses import field
 from typing import Any
 
 import numpy as np
 
 from slip.assess import Assessment
+from slip.base.records import record
 from slip.base.units import System
 from slip.report import inputs, machine
 from slip.report.words import check_name, factor, plain
@@ -23,7 +24,7 @@ MINUS = "\N{MINUS SIGN}"
 STATES = ("fails", "not solved", "holds")  # in the order of urgency
 
 
-@dataclass(frozen=True)
+@record
 class Row:
     """Cells of a table's row, the first names it; `state` is a verdict or '', `governs` marks what the verdict speaks of."""
 
@@ -32,7 +33,7 @@ class Row:
     governs: bool = False
 
 
-@dataclass(frozen=True)
+@record
 class Table:
     """Heads, some with a unit; `numbers` are the columns that hold numbers, `verdict` the one that shows the row's state.
     `rest` folds away below the open rows."""

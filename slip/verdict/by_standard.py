@@ -3,10 +3,11 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass, replace
+from dataclasses import replace
 
 import numpy as np
 
+from slip.base.records import record
 from slip.base.tables import find, number
 from slip.base.trace import Trace
 from slip.clamp.assembly import stress_area
@@ -27,7 +28,7 @@ class NotComparable(Exception):
     """The file lacks something that the standard needs; the text says what to add."""
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Entry:
     """One standard's answer for one end of a case: the judgement, or None with the reason why there is none."""
 
@@ -36,7 +37,7 @@ class Entry:
     check: Check
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Inputs:
     """What a standard may draw on for one load state; arrays (n,) over bolts, loads already at the standard's level."""
 

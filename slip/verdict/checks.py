@@ -2,14 +2,14 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
+
+from slip.base.records import record
 
 TIE = 1e-9  # factors closer than this, relative, are equal: the first in file order governs
 
 
-@dataclass(frozen=True)
+@record
 class Check:
     """Name of the check as in the JSON result; case, end and bolt where it speaks of one ('' otherwise).
 

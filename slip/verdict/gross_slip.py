@@ -2,10 +2,9 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 
+from slip.base.records import record
 from slip.clamp.stage import Clamp
 from slip.friction.stage import Slip
 from slip.joint.joint import Joint, Required
@@ -16,7 +15,7 @@ Array = np.ndarray
 LONE = "force alone, never decides"
 
 
-@dataclass(frozen=True)
+@record
 class End:
     """One end of a case: its checks, and the load states (indices) that govern them; an end has several only when unsigned.
 

@@ -3,10 +3,10 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
 
 import numpy as np
 
+from slip.base.records import record
 from slip.clamp.stage import Clamp
 from slip.friction.partial import NO_SHEAR, Partial
 from slip.friction.stage import Slip
@@ -19,7 +19,7 @@ from slip.verdict.gross_slip import End, judge_end
 HOLDS, FAILS, NOT_SOLVED = 0, 1, 3  # exit codes of the contract
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Verdict:
     """All checks in file order, the ends they belong to, the standards' entries by (case, end), the governing check."""
 

@@ -28,6 +28,7 @@ ORDER = {
 }
 # Imports inside functions: who, what, why. Nothing else may hide there.
 DEFERRED = {
+    ("base.records", "inspect"): "only somebody who asks for a signature pays for it",
     ("read.*", "difflib"): "only a wrong file asks for the nearest word",
     ("read.reader", "slip.read.template"): "only a wrong file is shown a sample of its key",
     ("friction.closed.*", "scipy.special"): "heavy; a check does without these closed forms",

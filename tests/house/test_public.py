@@ -141,3 +141,9 @@ def test_module_is_short_enough_to_read(path):
         assert lines > LONGEST, "short again: take it out of LONG"
     else:
         assert lines <= LONGEST, "it wants a second room"
+
+
+@pytest.mark.parametrize("path", SOURCES)
+def test_frozen_dataclasses_are_records(path):
+    """dataclasses compiles the methods of each class at every start; base.records shares them."""
+    assert "@dataclass(frozen=True" not in SOURCES[path], "write @record, or @record(eq=False) where it holds arrays"

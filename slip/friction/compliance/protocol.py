@@ -3,17 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from typing import Protocol
 
 import numpy as np
 from numpy.typing import NDArray
 
+from slip.base.records import record
+
 Array = NDArray[np.float64]
 Mask = NDArray[np.bool_]
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Transfer:
     """The same bodies on a coarser grid, and the way there and back.
 

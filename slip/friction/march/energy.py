@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
+from slip.base.records import record
 from slip.friction.compliance.protocol import Compliance
 from slip.friction.march.face import Face
 from slip.friction.march.problem import Problem, length
@@ -14,7 +13,7 @@ from slip.friction.march.problem import Problem, length
 Array = NDArray[np.float64]
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Split:
     """The relative motion of the faces [mm]: motion = slip + elongation + bulk, each (components, *field).
 

@@ -3,17 +3,18 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
+
+from slip.base.records import record
 
 Array = NDArray[np.float64]
 
 ONE_PLACE = 1e-9  # points that lie as near to each other as this, in parts of their positions, bear no moment
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Face:
     """B: one translation (one component), two translations, or two translations and a rotation (with positions).
 

@@ -7,12 +7,11 @@ programme supplies both. However it got there, the answer is as good as the gap 
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import ArrayLike
 
 from slip.base.errors import NotConverged
+from slip.base.records import record
 from slip.friction.march.cone import Array, Index, cross, dot, largest_factor, length, turned
 
 GAP_ALLOWED = 1e-8  # relative; a larger gap is not an answer
@@ -21,7 +20,7 @@ ON_LINE = 1e-15  # a line of action this near to a point, in parts of the length
 TIE = 1e-13  # turning about a point or pure shifting is preferred where it bounds as well as this
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Limit:
     """A gross-slip load with its proof; leading axes `...` are those of the cases, n the points.
 

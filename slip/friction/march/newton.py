@@ -2,11 +2,10 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
 import numpy as np
 from numpy.typing import NDArray
 
+from slip.base.records import record
 from slip.friction.march.problem import Point, Problem, length
 
 Array = NDArray[np.float64]
@@ -21,7 +20,7 @@ MOST_INNER = 200  # 2 to 10 are usual
 TIED = 1e-12  # motions that the points resist less than this, over what a stuck face resists at least, are left alone
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Change:
     """A change of tractions [MPa], C times it [mm], and the change of motion that goes with it."""
 

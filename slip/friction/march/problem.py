@@ -14,6 +14,7 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 
+from slip.base.records import record
 from slip.friction.compliance.protocol import Compliance
 from slip.friction.march.face import Face
 
@@ -44,7 +45,7 @@ class Tally:
     newton: int = 0
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Problem:
     """One grid's problem.
 
@@ -109,7 +110,7 @@ class Problem:
         )
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Point:
     """Tractions within their bounds, C times them, and a motion, with what is wrong with them.
 

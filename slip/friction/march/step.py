@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import dataclasses
-from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
 from slip.base.errors import NotConverged
+from slip.base.records import record
 from slip.friction.compliance.protocol import Compliance
 from slip.friction.march.energy import Split, dissipated, split, stored
 from slip.friction.march.face import Face
@@ -30,7 +30,7 @@ FAINT_WORK = 1e-8  # part of the energy that friction can store: the balance is 
 SELF_STRESS = 1e-3  # part of the tractions' sum that a load's error is relative to where the load itself vanishes
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class State:
     """A face at rest between two steps; fields are (components, *field), bound (*field).
 
@@ -45,7 +45,7 @@ class State:
     bound: Array
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Step:
     """A state reached, and the evidence for it.
 

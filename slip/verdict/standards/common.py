@@ -7,12 +7,12 @@ one joint.
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
-from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
 
+from slip.base.records import record
 from slip.base.tables import BASES, Row, number, table
 
 Number = float | NDArray[np.float64]
@@ -20,7 +20,7 @@ Step = tuple[Callable[..., Any], dict[str, float], float]
 TIE = 1e-9  # relative: utilisations closer than this are equal, and the first bolt governs
 
 
-@dataclass(frozen=True, eq=False)
+@record(eq=False)
 class Judgement:
     """Verdict of one standard on one load case.
 
