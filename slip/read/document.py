@@ -99,7 +99,8 @@ def _not_toml(text: str, file: str, said: str) -> Problems:
     written = text.rstrip().split("\n")
     line = int(place.group(1)) if place else len(written) if "end of document" in said else 0
     reason = " ".join(re.sub(r"\s*\(at .*\)$", "", said.split(";")[0], flags=re.DOTALL).split())
-    found = cut(written[line - 1].strip()) if 0 < line <= len(written) else "a value that cannot be read"
+    shown = written[line - 1] if 0 < line <= len(written) else ""
+    found = cut(shown.strip() or ascii(shown)) if shown else "a value that cannot be read"
     expected = f"TOML ({reason[:1].lower()}{reason[1:]})"
     remedy = 'write key = value, each key once, with text and quantities in quotes as in torque = "200 N m"'
     return refuse("file-not-toml", file, found, expected, remedy, line)

@@ -779,6 +779,7 @@ BROKEN = [
     ("table twice", b"[bolt]\n[losses]\n[bolt]\n", 3, "[bolt]"),
     ("open text", b'format = 1\ntitle = "abc\nthread = 1\n', 2, 'title = "abc'),
     ("open list", b"format = 1\nshear = [1, 2\n\n\n", 2, "shear = [1, 2"),
+    ("control character alone", b"format = 1\n\x1f\nkind = 1\n", 2, r"'\x1f'"),
     ("number of many digits", b"format = " + b"1" * 5000, 0, "cannot be read"),
     ("nested too deep", b"format = " + b"[" * 5000, 0, "nested brackets"),
 ]
