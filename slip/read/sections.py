@@ -64,7 +64,9 @@ class Section:
         return self.reader.stop((*self.path, name), code, found, expected, remedy)
 
     def stop_value(self, name: str, code: str, expected: str, remedy: str) -> Stop:
-        """As `stop`, for a key whose typed value is the fault."""
+        """As `stop`, for a key whose typed value is the fault; nothing more is said of a misspelt key that was meant for this one."""
+        if name not in self.raw:
+            return Stop()
         return self.stop(name, code, show(self.raw[name]), expected, remedy)
 
 

@@ -928,3 +928,10 @@ def test_a_word_that_no_table_holds() -> None:
     with pytest.raises(Problems) as caught:
         cli._tables(argparse.Namespace(word="zzzzz"))
     assert caught.value.errors[0].code == "no-row"
+
+
+def test_a_misspelt_key_is_said_once_and_stops_what_it_was_meant_for():
+    """`A` was meant for `at`, which "each bolt" does not take: only the unknown key is a fault that can be told."""
+    with pytest.raises(Problems) as caught:
+        read_text(GOOD.replace('acts_on = "joint"', 'A = []\nacts_on = "each bolt"'))
+    assert [error.code for error in caught.value.errors] == ["unknown-key"]
