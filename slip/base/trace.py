@@ -29,40 +29,43 @@ class Step:
 
 @dataclass
 class Trace:
-    """Collects steps; calling it computes a formula and records it."""
+    """Collects steps; calling it computes a formula and records it. With keep=False it computes the same and records nothing."""
 
     steps: list[Step] = field(default_factory=list)
+    keep: bool = True
 
     def __call__(self, name: str, function: Callable[..., Any], **values: Any) -> Any:
         """Result of `function(**values)`, recorded under `name`; the function must carry a formula."""
         result = function(**values)
-        formula: Formula = function.formula  # type: ignore[attr-defined]
-        self.steps.append(Step(name, formula, values, result, formula.source, formula.basis))
+        if self.keep:
+            formula: Formula = function.formula  # type: ignore[attr-defined]
+            self.steps.append(Step(name, formula, values, result, formula.source, formula.basis))
         return result
 
     def total(self, name: str, symbol: str, terms: Mapping[str, Any], unit: str, source: str, basis: str) -> Any:
         """Sum of named terms, recorded as one step."""
         result = sum(terms.values())
-        self.steps.append(
-            Step(name, Formula(symbol, " + ".join(terms), unit, source, basis, ""), terms, result, source, basis)
-        )
+        if self.keep:
+            formula = Formula(symbol, " + ".join(terms), unit, source, basis, "")
+            self.steps.append(Step(name, formula, terms, result, source, basis))
         return result
 
     def products(
         self, name: str, symbol: str, first: Sequence[Any], second: Sequence[Any], source: str, basis: str
-    ) -> Any:
-        """Sum of products first_i second_i, recorded as one step."""
+    ) -> None:
+        """Record the sum of products first_i second_i as one step."""
+        if not self.keep:
+            return
         values = {
             f"{letter}_{i + 1}": item for letter, items in (("F", first), ("s", second)) for i, item in enumerate(items)
         }
         text = " + ".join(f"F_{i + 1}*s_{i + 1}" for i in range(len(first)))
         result = sum(a * b for a, b in zip(first, second, strict=True))
         self.steps.append(Step(name, Formula(symbol, text, "", source, basis, ""), values, result, source, basis))
-        return result
 
     def given(self, name: str, symbol: str, value: Any, unit: str, source: str, basis: str) -> Any:
         """A value that is looked up or typed, recorded as it is."""
-        self.steps.append(
-            Step(name, Formula(symbol, "value", unit, source, basis, ""), {"value": value}, value, source, basis)
-        )
+        if self.keep:
+            formula = Formula(symbol, "value", unit, source, basis, "")
+            self.steps.append(Step(name, formula, {"value": value}, value, source, basis))
         return value

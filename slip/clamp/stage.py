@@ -8,6 +8,7 @@ from slip.base.errors import InputError, Problems
 from slip.base.notes import Note
 from slip.base.records import record
 from slip.base.trace import Trace
+from slip.clamp import losses as loss
 from slip.clamp import thread as screw
 from slip.clamp import tightening as tight
 from slip.clamp import working
@@ -27,6 +28,8 @@ class Ledger:
     """Arrays (S, n) in N over states and bolts; yield_use is a share, None without a grade; bearing_pressure in MPa, None
     where the bearing face is not known. relief: clamp taken by the axial load, negative where compression is credited."""
 
+    preload_low: Array
+    relaxation: Array
     thermal_loss: Array
     thermal_gain: Array
     relief: Array
@@ -52,33 +55,33 @@ class Clamp:
     warnings: tuple[Note, ...]
 
 
-def clamp(joint: Joint) -> Clamp:
-    """The clamp stage of a joint. Raises Problems for a lowest preload that no bolt of the grade can carry."""
-    assembly, loaded = assemble(joint), states(joint)
-    _refuse_impossible(joint, assembly)
+def clamp(joint: Joint, loaded: States | None = None) -> Clamp:
+    """The clamp stage of a joint, under its own cases or under `loaded`.
+
+    Raises Problems for a lowest preload that no bolt of the grade can carry.
+    """
+    assembly = assemble(joint)
+    refuse_impossible(joint, assembly)
+    loaded = states(joint) if loaded is None else loaded
     notes: list[Note] = []
     result = ledger(joint, assembly, loaded, notes)
     assumptions = (*assembly.assumptions, *notes)
-    return Clamp(assembly, loaded, result, assumptions, tuple(_warnings(joint, assembly, result)))
+    return Clamp(assembly, loaded, result, assumptions, tuple(warnings(joint, assembly, highest(result))))
 
 
-def ledger(joint: Joint, assembly: Assembly, loaded: States, notes: list[Note]) -> Ledger:
-    """The ledger of every state and bolt."""
-    trace = Trace()
-    loss, gain = _thermal(joint, assembly, loaded)
-    trace.given("thermal loss", "F_th", loss, "N", "statics", "derived")
+def ledger(joint: Joint, assembly: Assembly, loaded: States, notes: list[Note], keep: bool = True) -> Ledger:
+    """The ledger of every state and bolt; keep=False leaves the record of the calculation out."""
+    trace = Trace(keep=keep)
+    ones = np.ones_like(loaded.axial)
+    thermal_loss, gain = _thermal(assembly, loaded)
+    trace.given("thermal loss", "F_th", thermal_loss, "N", "statics", "derived")
     trace.given("thermal gain, not credited to the lowest clamp", "F_gain", gain, "N", "statics", "derived")
-    kept = {"F_low": assembly.low, "F_Z": assembly.embedding, "F_R": assembly.relaxation, "F_th": loss}
+    preload, relaxation = _own_preload(joint, assembly, loaded, trace)
+    kept = {"F_low": preload, "F_Z": assembly.embedding, "F_R": relaxation, "F_th": thermal_loss}
     without = trace("lowest clamp without the axial load", working.clamp_without_axial, **kept)
-    if joint.axial.credit_compression:
-        # A bolt that has lost its clamp stays open: what presses it under the whole load did not hold it under less.
-        pressing = np.where(without > 0, loaded.axial, np.maximum(loaded.axial, 0.0))
-        values = {"Phi": assembly.share_low, "F_ax": pressing, "Phi_c": assembly.share_high}
-        relief = trace("axial relief, compression credited", working.axial_relief_credited, **values)
-    else:
-        relief = trace("axial relief", working.axial_relief, Phi=assembly.share_low, F_ax=loaded.axial)
+    relief, external = _relief(joint, assembly, loaded, without, trace)
     low = trace("lowest clamp", working.clamp_low, **kept, relief=relief)
-    top = {"F_high": assembly.high, "F_gain": gain}
+    top = {"F_high": np.maximum(assembly.high, preload), "F_gain": gain}
     if joint.axial.credit_compression:
         high = trace("highest clamp, compression credited", working.clamp_high_credited, **top, relief=relief)
     else:
@@ -86,18 +89,19 @@ def ledger(joint: Joint, assembly: Assembly, loaded: States, notes: list[Note]) 
     force = trace(
         "highest bolt force",
         working.bolt_force_high,
-        F_high=assembly.high,
-        F_gain=gain,
+        **top,
         Phi=assembly.share_high,
-        F_ax=loaded.axial,
+        F_ax=external,
     )
     return Ledger(
-        thermal_loss=loss,
-        thermal_gain=gain,
+        preload_low=preload * ones,
+        relaxation=relaxation * ones,
+        thermal_loss=thermal_loss * ones,
+        thermal_gain=gain * ones,
         relief=relief,
-        clamp_without_axial=without * np.ones_like(relief),
+        clamp_without_axial=without * ones,
         clamp_low=low,
-        clamp_high=high * np.ones_like(relief),
+        clamp_high=high * ones,
         bolt_force_high=force,
         yield_use=_yield_use(joint, assembly, force, trace, notes),
         bearing_pressure=_bearing_pressure(joint, force, trace),
@@ -107,12 +111,39 @@ def ledger(joint: Joint, assembly: Assembly, loaded: States, notes: list[Note]) 
     )
 
 
-def _thermal(joint: Joint, assembly: Assembly, loaded: States) -> tuple[Array, Array]:
-    """Thermal loss and gain of every state and bolt; a case's own loss takes the place of the file's."""
-    own = [case.thermal for case in joint.cases]
-    given = np.array([own[i] is not None for i in loaded.case])[:, None]
-    typed = np.array([own[i] or 0.0 for i in loaded.case])[:, None]
-    return np.where(given, typed, assembly.thermal_loss), np.where(given, 0.0, assembly.thermal_gain)
+def _thermal(assembly: Assembly, loaded: States) -> tuple[Array, Array]:
+    """Thermal loss and gain of every state and bolt; a state's own loss takes the place of the file's."""
+    given = ~np.isnan(loaded.thermal)
+    return np.where(given, loaded.thermal, assembly.thermal_loss), np.where(given, 0.0, assembly.thermal_gain)
+
+
+def _own_preload(joint: Joint, assembly: Assembly, loaded: States, trace: Trace) -> tuple[Array, Array]:
+    """Lowest preload and its relaxation, of the file or, where a table has one, of the state and bolt."""
+    if loaded.preload_low is None:
+        return assembly.low, assembly.relaxation
+    given = ~np.isnan(loaded.preload_low)
+    low = np.where(given, loaded.preload_low, assembly.low)
+    trace.given("lowest preload of the table", "F_low", low, "N", "file", "given")
+    return low, trace("relaxation of it", loss.relaxation_loss, share=joint.losses.relaxation, F=low)
+
+
+def _relief(joint: Joint, assembly: Assembly, loaded: States, without: Array, trace: Trace) -> tuple[Array, Array]:
+    """Clamp that the axial load takes, and the external axial force behind it, (S, n)."""
+    credited = joint.axial.credit_compression
+    if loaded.contact is not None:
+        name = "axial relief, from the contact force" + (", compression credited" if credited else "")
+        function = working.contact_relief_credited if credited else working.contact_relief
+        relief = trace(name, function, F_0=joint.axial.model_preload, F_c=loaded.contact)
+        if loaded.axial.any():
+            return relief, loaded.axial
+        name = "external axial force behind the relief"
+        return relief, trace(name, working.external_from_relief, relief=relief, Phi=assembly.share_low)
+    if credited:
+        # A bolt that has lost its clamp stays open: what presses it under the whole load did not hold it under less.
+        pressing = np.where(without > 0, loaded.axial, np.maximum(loaded.axial, 0.0))
+        values = {"Phi": assembly.share_low, "F_ax": pressing, "Phi_c": assembly.share_high}
+        return trace("axial relief, compression credited", working.axial_relief_credited, **values), loaded.axial
+    return trace("axial relief", working.axial_relief, Phi=assembly.share_low, F_ax=loaded.axial), loaded.axial
 
 
 def _yield_use(joint: Joint, assembly: Assembly, force: Array, trace: Trace, notes: list[Note]) -> Array | None:
@@ -150,7 +181,7 @@ def _bearing_pressure(joint: Joint, force: Array, trace: Trace) -> Array | None:
     return pressure
 
 
-def _refuse_impossible(joint: Joint, assembly: Assembly) -> None:
+def refuse_impossible(joint: Joint, assembly: Assembly) -> None:
     """A lowest preload above the tensile force of the bolt is a wrong input: it would hold what no bolt can hold."""
     bolt, say = joint.bolt, joint.system.say
     if bolt.grade is None or bolt.thread is None:
@@ -163,29 +194,42 @@ def _refuse_impossible(joint: Joint, assembly: Assembly) -> None:
         raise Problems([InputError("preload-impossible", "tightening", found, expected, remedy, joint.file)])
 
 
-def _warnings(joint: Joint, assembly: Assembly, found: Ledger) -> list[Note]:
+@record
+class Highest:
+    """Highest use of yield and pressure under the head [MPa] of all states and bolts; None where not known."""
+
+    yield_use: float | None
+    bearing_pressure: float | None
+
+
+def highest(found: Ledger) -> Highest:
+    """The highest values of a ledger."""
+    return Highest(*(None if v is None else float(v.max()) for v in (found.yield_use, found.bearing_pressure)))
+
+
+def warnings(joint: Joint, assembly: Assembly, found: Highest) -> list[Note]:
     """What a reviewer must know about the bolt and its bearing face."""
-    warnings = []
+    said = []
     if joint.bolt.grade is None:
-        warnings.append(Note("no-grade", "no grade: the strength of the bolt is not judged", "bolt.grade"))
+        said.append(Note("no-grade", "no grade: the strength of the bolt is not judged", "bolt.grade"))
     bolt, say = joint.bolt, joint.system.say
     if bolt.grade is not None and bolt.thread is not None:
         limit = bolt.grade.yield_strength * stress_area(bolt.thread, Trace())
-        highest = float(assembly.high.max())
-        if highest > limit:
-            text = f"highest preload {say(highest, 'force')} is above the bolt's yield, {say(limit, 'force')}"
-            warnings.append(Note("preload-above-yield", text, "tightening"))
-        elif found.yield_use is not None and float(found.yield_use.max()) > 1:
-            text = f"bolt force and tightening torsion use {found.yield_use.max():.3g} of yield"
-            warnings.append(Note("yield-use", text, "tightening"))
+        most = float(assembly.high.max())
+        if most > limit:
+            text = f"highest preload {say(most, 'force')} is above the bolt's yield, {say(limit, 'force')}"
+            said.append(Note("preload-above-yield", text, "tightening"))
+        elif found.yield_use is not None and found.yield_use > 1:
+            text = f"bolt force and tightening torsion use {found.yield_use:.3g} of yield"
+            said.append(Note("yield-use", text, "tightening"))
     faces = {"head": joint.plates[:1], "nut": () if bolt.tapped else joint.plates[1:][-1:]}
     pressed = [(plate.material, name) for name, plates in faces.items() for plate in plates]
     yields = [(m.yield_strength, m.name, name) for m, name in pressed if m is not None and m.yield_strength]
     if yields and found.bearing_pressure is not None:
-        pressure, (limit, material, name) = float(found.bearing_pressure.max()), min(yields)
+        pressure, (limit, material, name) = found.bearing_pressure, min(yields)
         if pressure > limit:
             text = f"pressure under the {name} {say(pressure, 'pressure')} is above the yield of {material}"
-            warnings.append(Note("bearing-pressure", text, "bolt.bearing_diameter"))
+            said.append(Note("bearing-pressure", text, "bolt.bearing_diameter"))
     if float(assembly.low.min()) <= 0:
-        warnings.append(Note("no-preload", "the lowest assembly preload is zero", "tightening"))
-    return warnings
+        said.append(Note("no-preload", "the lowest assembly preload is zero", "tightening"))
+    return said

@@ -21,11 +21,35 @@ ROUNDING = 1e-12  # an arm or a moment smaller than this part of what it is the 
 
 
 @record(eq=False)
+class Acting:
+    """What acts in S states, before it is moved to the centroid and shared over n bolts.
+
+    case: index of the case, (S,); end: "given" or "other" of each. shear (2, S, 1 or n), axial (S, 1 or n) [N] and couple (3, S, 1)
+    [N mm], on the joint, or on each bolt where `each` (S, 1) says so. at (S, 2), height (S, 1) [mm]: where shear and axial act.
+    thermal (S, 1 or n) [N]: a loss of the state's own, NaN where that of the file counts. preload_low, contact (S, n) [N]: lowest
+    assembly preload and contact force round the bolt that a table gives, None where it has no such column.
+    """
+
+    case: Array
+    end: tuple[str, ...]
+    shear: Array
+    axial: Array
+    couple: Array
+    at: Array
+    height: Array
+    each: Array
+    thermal: Array
+    preload_low: Array | None = None
+    contact: Array | None = None
+
+
+@record(eq=False)
 class States:
     """S load states over n bolts. case: index of the case, (S,); end: "given" or "other" of each state.
 
     shear: force on each bolt, (2, S, n) in N; axial: external axial force at each bolt, (S, n) in N, tension positive;
-    load: resultant shear and its moment about the centroid of the pattern, (S, 3) in N, N mm.
+    load: resultant shear and its moment about the centroid of the pattern, (S, 3) in N, N mm. thermal, preload_low, contact: as in
+    Acting.
     """
 
     case: Array
@@ -33,6 +57,9 @@ class States:
     shear: Array
     axial: Array
     load: Array
+    thermal: Array
+    preload_low: Array | None
+    contact: Array | None
     trace: Trace
 
 
@@ -41,26 +68,58 @@ def states(joint: Joint) -> States:
 
     Raises Problems when a tilting moment meets a pattern that cannot carry it.
     """
+    acting = _acting(joint)
+    wrong = not_carried(joint, acting)
+    if wrong.any():
+        names = dict.fromkeys(joint.cases[i].name for i in acting.case[wrong])
+        raise Problems([tilting_fault(joint, f", in {', '.join(list(names)[:5])}", joint.file)])
+    return shared(joint, acting, Trace())
+
+
+def shared(joint: Joint, acting: Acting, trace: Trace) -> States:
+    """The states of what acts: moved to the centroid and shared over the bolts; no tilting moment may be left uncarried."""
+    count, each = joint.pattern.count, acting.each
+    shape = len(acting.case), count
+    if each.all():
+        shear = np.broadcast_to(acting.shear, (2, *shape))
+        tension = np.broadcast_to(_external(joint.axial, acting.axial, trace), shape)
+        total = _own_resultant(joint.pattern, shear)
+    else:
+        total, moments = _at_centroid(joint.pattern, acting, trace)
+        shear = _shared_shear(joint.pattern, acting.shear[0], acting.shear[1], moments[2], trace)
+        tension = _shared_tension(joint, acting.axial, moments[0], moments[1], trace)
+        if each.any():
+            shear = np.where(each, acting.shear, shear)
+            tension = np.where(each, _external(joint.axial, acting.axial, trace), tension)
+            total = np.where(each, _own_resultant(joint.pattern, shear), total)
+    own = acting.thermal, acting.preload_low, acting.contact
+    return States(acting.case, acting.end, shear, tension, total, *own, trace)
+
+
+def _own_resultant(pattern: Pattern, shear: Array) -> Array:
+    """Resultant and moment (S, 3) of the shears (2, S, n) that each bolt has of its own."""
+    arms = pattern.arms
+    parts = np.stack([arms[:, 0] * shear[1], -arms[:, 1] * shear[0]])
+    turning = _unless_rounding(parts.sum(axis=(0, -1)), np.abs(parts).sum(axis=(0, -1)))
+    return np.stack([shear[0].sum(axis=-1), shear[1].sum(axis=-1), turning], axis=-1)
+
+
+def _acting(joint: Joint) -> Acting:
+    """The ends of the joint's cases as columns (S, 1), so that they broadcast over the bolts."""
     listed = [(i, end, load) for i, case in enumerate(joint.cases) for end, load in _expanded(case)]
     owners = [joint.cases[i] for i, _, _ in listed]
     loads = [load for _, _, load in listed]
-    trace = Trace()
-    # (S, 1) columns, so that they broadcast over the bolts
-    vx, vy = (np.array([[load.shear[axis]] for load in loads]) for axis in (0, 1))
-    axial = np.array([[load.axial] for load in loads])
-    each = np.array([[case.each_bolt] for case in owners])
-    total, moments = _at_centroid(joint.pattern, owners, loads, (vx, vy, axial), trace)
-    shear = _shared_shear(joint.pattern, vx, vy, moments[2], trace)
-    tension = _shared_tension(joint, owners, axial, moments[0], moments[1], trace)
-    if each.any():
-        shear = np.where(each, np.stack([vx, vy]), shear)
-        tension = np.where(each, _external(joint.axial, axial, trace), tension)
-        arms = joint.pattern.arms
-        parts = np.stack([arms[:, 0] * shear[1], -arms[:, 1] * shear[0]])
-        turning = _unless_rounding(parts.sum(axis=(0, -1)), np.abs(parts).sum(axis=(0, -1)))
-        own = np.stack([shear[0].sum(axis=-1), shear[1].sum(axis=-1), turning], axis=-1)
-        total = np.where(each, own, total)
-    return States(np.array([i for i, _, _ in listed]), tuple(end for _, end, _ in listed), shear, tension, total, trace)
+    return Acting(
+        case=np.array([i for i, _, _ in listed]),
+        end=tuple(end for _, end, _ in listed),
+        shear=np.array([[[load.shear[axis]] for load in loads] for axis in (0, 1)]),
+        axial=np.array([[load.axial] for load in loads]),
+        couple=np.array([[[load.moment[axis]] for load in loads] for axis in range(3)]),
+        at=np.array([case.at or joint.pattern.centroid for case in owners]),
+        height=np.array([[case.height or 0.0] for case in owners]),
+        each=np.array([[case.each_bolt] for case in owners]),
+        thermal=np.array([[np.nan if case.thermal is None else case.thermal] for case in owners]),
+    )
 
 
 def _expanded(case: Case) -> Iterator[tuple[str, Load]]:
@@ -75,16 +134,11 @@ def _expanded(case: Case) -> Iterator[tuple[str, Load]]:
         yield end, Load((vx, vy), f, (mx, my, mz))
 
 
-def _at_centroid(
-    pattern: Pattern, owners: list[Case], loads: list[Load], forces: tuple[Array, Array, Array], trace: Trace
-) -> tuple[Array, tuple[Array, Array, Array]]:
+def _at_centroid(pattern: Pattern, acting: Acting, trace: Trace) -> tuple[Array, tuple[Array, Array, Array]]:
     """Resultant (S, 3) of shear and turning moment, and the three moments (S, 1), at the centroid in the sliding face."""
-    middle = pattern.centroid
-    at = np.array([case.at or middle for case in owners])
+    middle, at, z = pattern.centroid, acting.at, acting.height
     x, y = _unless_rounding(at - middle, np.abs(at) + np.abs(pattern.positions).max(axis=0)).T[:, :, None]
-    z = np.array([[case.height or 0.0] for case in owners])
-    cx, cy, cz = (np.array([[load.moment[axis]] for load in loads]) for axis in range(3))
-    vx, vy, axial = forces
+    (vx, vy), axial, (cx, cy, cz) = acting.shear, acting.axial, acting.couple
     mx = trace("tilting moment about x", working.moment_x, C_x=cx, F_z=axial, y=y, z=z, V_y=vy)
     my = trace("tilting moment about y", working.moment_y, C_y=cy, F_z=axial, x=x, z=z, V_x=vx)
     mz = trace("turning moment at the centroid", working.moment_z, C_z=cz, x=x, V_y=vy, y=y, V_x=vx)
@@ -111,7 +165,7 @@ def _shared_shear(pattern: Pattern, vx: Array, vy: Array, mz: Array, trace: Trac
     )
 
 
-def _shared_tension(joint: Joint, owners: list[Case], axial: Array, mx: Array, my: Array, trace: Trace) -> Array:
+def _shared_tension(joint: Joint, axial: Array, mx: Array, my: Array, trace: Trace) -> Array:
     """External axial force at every bolt, (S, n): equal parts and the tilting moments in principal axes."""
     second, axes = _principal(joint.pattern)
     u, v = axes @ joint.pattern.arms.T
@@ -121,15 +175,17 @@ def _shared_tension(joint: Joint, owners: list[Case], axial: Array, mx: Array, m
         )
         for name, (ax, ay) in zip("uv", axes, strict=True)
     )
-    carried = second > STRAIGHT * max(float(second.max()), 1.0)
-    for moment, axis in ((mu, 1), (mv, 0)):  # a moment about u needs arms along v
-        if not carried[axis]:
-            _refuse_tilting(joint, owners, moment, np.abs(mx) + np.abs(my))
+    carried = _carried(second)
     su, sv = (float(s) if ok else 1.0 for s, ok in zip(second, carried, strict=True))
     u, v = (w if ok else np.zeros_like(w) for w, ok in zip((u, v), carried, strict=True))
     values = {"n": joint.pattern.count, "M_u": mu, "v": v, "sum_v2": sv, "M_v": mv, "u": u, "sum_u2": su}
     tension: Array = trace("external axial force at the bolt", working.bolt_tension, F_z=axial, **values)
     return tension
+
+
+def _carried(second: Array) -> Array:
+    """Whether the pattern has arms along its principal axes u and v, (2,)."""
+    return second > STRAIGHT * max(float(second.max()), 1.0)
 
 
 def _principal(pattern: Pattern) -> tuple[Array, Array]:
@@ -145,18 +201,27 @@ def _principal(pattern: Pattern) -> tuple[Array, Array]:
     return second, np.array([first, [-first[1], first[0]]])
 
 
-def _refuse_tilting(joint: Joint, owners: list[Case], moment: Array, scale: Array) -> None:
-    """Raise Problems for cases whose tilting moment has no arm in the pattern."""
-    wrong = np.abs(moment[:, 0]) > 1e-9 * scale[:, 0]
-    names = list(
-        dict.fromkeys(case.name for case, bad in zip(owners, wrong, strict=True) if bad and not case.each_bolt)
+def not_carried(joint: Joint, acting: Acting) -> Array:
+    """Which states load the joint with a tilting moment that has no arm in the pattern, (S,)."""
+    second, axes = _principal(joint.pattern)
+    carried = _carried(second)
+    if carried.all() or acting.each.all():
+        return np.zeros(len(acting.case), dtype=bool)
+    _, (mx, my, _) = _at_centroid(joint.pattern, acting, Trace(keep=False))
+    least = 1e-9 * (np.abs(mx) + np.abs(my))
+    about = [working.principal_moment(mx, ax, my, ay) for ax, ay in axes]
+    wrong = [np.abs(moment) > least for moment, axis in zip(about, (1, 0), strict=True) if not carried[axis]]
+    return (np.any(wrong, axis=0) & ~acting.each)[:, 0]  # a moment about u needs arms along v
+
+
+def tilting_fault(joint: Joint, where: str, file: str, line: int = 0) -> InputError:
+    """The fault of a tilting moment that the pattern cannot carry."""
+    what = "one bolt" if joint.pattern.count == 1 else "bolts in a line"
+    expected = "a pattern with arms across the moment's axis"
+    remedy = "carry the moment by other means, or give bolt forces"
+    return InputError(
+        "moment-not-carried", "case.moment", f"a tilting moment on {what}{where}", expected, remedy, file, line
     )
-    if names:
-        what = "one bolt" if joint.pattern.count == 1 else "bolts in a line"
-        found = f"a tilting moment on {what}, in {', '.join(names[:5])}"
-        expected = "a pattern with arms across the moment's axis"
-        remedy = "carry the moment by other means, or give bolt forces"
-        raise Problems([InputError("moment-not-carried", "case.moment", found, expected, remedy, joint.file)])
 
 
 def _external(axial: Axial, typed: Array, trace: Trace) -> Array:

@@ -95,6 +95,27 @@ def axial_relief_credited(Phi: Value, F_ax: Value, Phi_c: Value) -> Value:
     return (1 - Phi) * np.maximum(F_ax, 0) + (1 - Phi_c) * np.minimum(F_ax, 0)
 
 
+@formula("relief", "max(F_0 - F_c, 0)", unit="N", **STATICS)
+def contact_relief(F_0: Value, F_c: Value) -> Value:
+    """Clamp [N] taken away in a model that tells the contact force F_c round the bolt, F_0 its preload; a gain is not credited.
+
+    (statics, derived)
+    """
+    return np.maximum(F_0 - F_c, 0)
+
+
+@formula("relief", "F_0 - F_c", unit="N", **STATICS)
+def contact_relief_credited(F_0: Value, F_c: Value) -> Value:
+    """As contact_relief, with a contact force above the preload credited on request (statics, derived)."""
+    return F_0 - F_c
+
+
+@formula("F_A", "relief/(1 - Phi)", unit="N", **STATICS, valid="Phi < 1")
+def external_from_relief(relief: Value, Phi: Value) -> Value:
+    """External axial force [N] behind a relief of the clamp, bolt share Phi (statics, derived)."""
+    return relief / (1 - Phi)
+
+
 @formula("clamp_0", "max(F_low - F_Z - F_R - F_th, 0)", unit="N", **STATICS)
 def clamp_without_axial(F_low: Value, F_Z: Value, F_R: Value, F_th: Value) -> Value:
     """Lowest clamp [N] before the axial load: assembly less embedding, relaxation, thermal loss; never below zero (statics, derived)."""

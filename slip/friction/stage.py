@@ -6,7 +6,8 @@ import numpy as np
 
 from slip.base.records import record
 from slip.base.trace import Trace
-from slip.clamp.stage import Clamp
+from slip.clamp.stage import Ledger
+from slip.clamp.states import States
 from slip.clamp.working import resultant
 from slip.friction import law
 from slip.friction.march.limit import Limit, limit
@@ -40,10 +41,9 @@ class Slip:
     force_trace: Trace
 
 
-def slip(joint: Joint, clamp: Clamp, pressure: Pressure) -> Slip:
-    """The friction stage of a joint at the lowest friction and the lowest clamp."""
-    trace, group_trace, force_trace = Trace(), Trace(), Trace()
-    ledger, states = clamp.ledger, clamp.states
+def slip(joint: Joint, states: States, ledger: Ledger, pressure: Pressure, keep: bool = True) -> Slip:
+    """The friction stage of a joint at the lowest friction and the lowest clamp; keep=False leaves the record of the calculation out."""
+    trace, group_trace, force_trace = Trace(keep=keep), Trace(keep=keep), Trace(keep=keep)
     mu, m = joint.interface.friction_low, joint.interface.parallel_faces
     shear = trace("shear of the bolt", resultant, F_x=states.shear[0], F_y=states.shear[1])
     held = trace("friction capacity", law.capacity, mu=mu, m=m, clamp=ledger.clamp_low)
@@ -91,6 +91,8 @@ def _group(
     growing = limit_with_relief(bound * shares, relief * shares, points, load)
     stuck = at_given.factor == 0  # what is closed at the given load cannot carry any part of it
     factor = np.where(stuck, 0.0, growing.factor)
+    if not trace.keep:
+        return at_given, factor
     names = ("safety of the group, clamp held", "load factor of the group, all loads")
     left = np.where(stuck[:, None], held, _left(bound, relief, factor))
     grown = np.where(stuck[:, None], at_given.motion, growing.motion)

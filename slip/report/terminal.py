@@ -155,7 +155,7 @@ def _ledger(assessment: Assessment, system: System) -> Iterator[str]:
     gain = f" (gain {say(found.thermal_gain[s, b])} not credited)" if found.thermal_gain[s, b] else ""
     losses = [
         f"embedding {say(a.embedding[b])}",
-        f"relaxation {say(a.relaxation[b])}",
+        f"relaxation {say(found.relaxation[s, b])}",
         f"thermal {say(found.thermal_loss[s, b])}{gain}",
         f"axial {say(found.relief[s, b])}",
     ]
@@ -176,7 +176,7 @@ def _ledger(assessment: Assessment, system: System) -> Iterator[str]:
     bolt = f"Bolt {plain(joint.pattern.names[b], 14)} in {plain(case, 30)}"
     place = ", ".join([bolt, *end_of(assessment, case, end.end)])
     yield f"{place}, in {system.force}:"
-    yield _cells("preload", f"{say(a.low[b])} .. {say(a.high[b])}", f"low end: {a.low_from}")
+    yield _cells("preload", f"{say(found.preload_low[s, b])} .. {say(a.high[b])}", f"low end: {a.low_from}")
     yield _cells("losses", ", ".join(losses))
     yield _cells("clamp", f"{say(found.clamp_low[s, b])} .. {say(found.clamp_high[s, b])}", ", ".join(top))
     yield _cells("friction", holds, against)

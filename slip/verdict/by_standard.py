@@ -83,7 +83,7 @@ def judge_standard(
     worst = judged[first_least(reserves)]
     reserve = float(reserves.min())
     unmet = list(worst.unmet)
-    lowest = float(clamp.assembly.low.min())
+    lowest = float(clamp.ledger.preload_low[rows].min())
     if worst.presumed_preload is not None and lowest < worst.presumed_preload:
         say = joint.system.say
         unmet.append(
@@ -128,7 +128,7 @@ def _inputs(
         moment=level * abs(float(states.load[row, 2])),
         clamp=raised,
         nominal=float(clamp.assembly.nominal.min()),
-        lowest=float(clamp.assembly.low.min()),
+        lowest=float(ledger.preload_low[row].min()),
         embedding=float(clamp.assembly.embedding.max()),
         relaxation=joint.losses.relaxation,
         thermal_loss=float(ledger.thermal_loss[row].max()),
