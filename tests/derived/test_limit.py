@@ -1,4 +1,5 @@
-"""The gross-slip load: closed forms, its proof on ten thousand patterns, a linear programme as second route, laws, relief."""
+"""The gross-slip load: closed forms, its proof on ten thousand patterns, second routes (a linear programme, the cone programme), laws,
+relief."""
 
 from __future__ import annotations
 
@@ -9,7 +10,7 @@ import pytest
 from scipy.optimize import linprog
 
 from slip.base.errors import NotConverged
-from slip.friction.march import cone
+from slip.friction.march import cone, frame, motions, relief
 from slip.friction.march.limit import Limit, limit
 from slip.friction.march.relief import limit_with_relief, relieved_factor
 
@@ -277,10 +278,20 @@ def test_proof(name: str) -> None:
         audit(b, r, c, limit(b, r, c))
 
 
+@pytest.mark.parametrize("name", NAMES)
+def test_proof_of_the_cone_programme(name: str, monkeypatch: pytest.MonkeyPatch) -> None:
+    """The same where no case is solved by descent."""
+    by_cone_alone(monkeypatch)
+    for n in SIZES:
+        b, r, c = pattern(name, n)
+        audit(b, r, c, limit(b, r, c))
+
+
 @pytest.mark.parametrize("name", ["random", "random wild", "on 0.5", "on 1", "centric", "torque wild"])
 def test_last_digits_do_no_harm(name: str, monkeypatch: pytest.MonkeyPatch) -> None:
     """Pushed on until rounding stops it, the programme still proves its answer."""
     monkeypatch.setattr(cone, "GAP_SOUGHT", 1e-16)
+    by_cone_alone(monkeypatch)
     for n in SIZES:
         b, r, c = pattern(name, n)
         answer = limit(b, r, c)
@@ -302,6 +313,88 @@ def test_proof_on_many() -> None:
     b, r = 10.0 ** rng.uniform(-3.0, 3.0, (100_000, 6)), rng.uniform(-100.0, 100.0, (6, 2))
     c = np.column_stack([rng.normal(size=(100_000, 2)), 100.0 * rng.normal(size=100_000)])
     audit(b, np.broadcast_to(r, (100_000, 6, 2)), c, limit(b, r, c))
+
+
+# --- descent and cone programme ------------------------------------------------------------------------------------------------------
+
+
+def by_cone_alone(monkeypatch: pytest.MonkeyPatch) -> None:
+    """No gap is small enough for the descent: all its cases go on to the cone programme, or to the search where there is relief."""
+    monkeypatch.setattr(motions, "GAP_SURE", -1.0)
+
+
+@pytest.fixture
+def left(monkeypatch: pytest.MonkeyPatch) -> dict[str, int]:
+    """How many cases the cone programme and the search got."""
+    count = {"cone": 0, "search": 0}
+    solve, search = frame.largest_factor, relief._Search
+
+    def counted(b, r, force, moment):
+        count["cone"] += force.size
+        return solve(b, r, force, moment)
+
+    def searched(b, q, r, c):
+        count["search"] += len(b)
+        return search(b, q, r, c)
+
+    monkeypatch.setattr(frame, "largest_factor", counted)
+    monkeypatch.setattr(relief, "_Search", searched)
+    return count
+
+
+@pytest.mark.parametrize("name", NAMES)
+def test_descent_against_the_cone_programme(name: str, monkeypatch: pytest.MonkeyPatch) -> None:
+    """Two solvers that share no step. Derived."""
+    found = [limit(*pattern(name, n)) for n in SIZES]
+    by_cone_alone(monkeypatch)
+    for n, answer in zip(SIZES, found, strict=True):
+        same(limit(*pattern(name, n)), answer.factor)
+
+
+def six_bolts(cases: int) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    """Uneven bounds on the bracket, loads in every direction; the centre is on a bolt in every sixth case or so."""
+    rng = np.random.default_rng(2024)
+    load = rng.normal(size=(cases, 3)) * [2e4, 2e4, 2e6]
+    return rng.uniform(2e3, 2e4, (cases, 6)), BRACKET, load
+
+
+def test_six_bolts_against_the_cone_programme(monkeypatch: pytest.MonkeyPatch) -> None:
+    b, r, c = six_bolts(20_000)
+    found = limit(b, r, c)
+    on_a_bolt = np.hypot(*(found.centre[:, None] - r).T).min(0) < 1e-9
+    assert on_a_bolt.mean() > 0.1
+    by_cone_alone(monkeypatch)
+    again = limit(b, r, c)
+    same(again, found.factor)
+    near = np.abs(found.centre).max(-1) < 1e3
+    np.testing.assert_allclose(found.centre[near], again.centre[near], atol=2e-2)
+
+
+def test_hardly_a_case_of_six_bolts_is_left(left: dict[str, int]) -> None:
+    """Operations, not seconds: looks at a motion, and cases that cost a cone programme."""
+    found = limit(*six_bolts(20_000))
+    assert left["cone"] <= 20
+    assert found.iterations.mean() < 4.5 and (found.gap < 1e-12).all()
+
+
+@pytest.mark.parametrize("turn", [0.0, 0.3, np.pi / 2.0])
+def test_hardly_a_row_is_left(turn: float, left: dict[str, int]) -> None:
+    """Bolts in a row, force along it, at an angle and across: across it no tangent leads to the bolt that is the centre."""
+    rng = np.random.default_rng(5)
+    row, force = np.column_stack([[-90.0, -30.0, 30.0, 90.0], np.zeros(4)]), rng.normal(size=2000)
+    load = np.column_stack([force * np.cos(turn), force * np.sin(turn), 100.0 * rng.normal(size=2000)])
+    for b in (rng.uniform(1.0, 2.0, (2000, 4)), np.ones(4)):
+        audit(np.broadcast_to(b, (2000, 4)), np.broadcast_to(row, (2000, 4, 2)), load, limit(b, row, load))
+    assert left["cone"] <= 8
+
+
+def test_many_points(left: dict[str, int]) -> None:
+    rng = np.random.default_rng(12)
+    b, r = rng.uniform(2e3, 2e4, (300, 200)), rng.uniform(-100.0, 100.0, (200, 2))
+    c = rng.normal(size=(300, 3)) * [2e4, 2e4, 2e6]
+    found = limit(b, r, c)
+    audit(b, np.broadcast_to(r, (300, 200, 2)), c, found)
+    assert left["cone"] == 0 and found.iterations.mean() < 5.0
 
 
 # --- a second route ------------------------------------------------------------------------------------------------------------------
@@ -487,6 +580,7 @@ def test_refused(bound, positions, load) -> None:
 
 def test_unproven_raises(monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(cone, "MOST_ITERATIONS", 3)
+    by_cone_alone(monkeypatch)
     with pytest.raises(NotConverged, match="lies between") as caught:
         limit(np.ones(4), SQUARE, (0.0, 1.0, 100.0))
     assert caught.value.code == "limit-gap"
@@ -536,6 +630,56 @@ def test_relief_by_bisection(kind: str) -> None:
     beyond = answer.upper[finite, None] * (1.0 + 1e-6)
     work = np.maximum(0.0, b[finite] - beyond * relief[finite]) * slips(r, answer.motion)[finite]
     assert (work.sum(-1) < beyond[:, 0]).all()
+
+
+@pytest.mark.parametrize("kind", ["plain", "mixed", "open", "pressed"])
+def test_relief_against_the_search(kind: str, monkeypatch: pytest.MonkeyPatch) -> None:
+    """The descent against limits of fixed bounds by the cone programme. Derived."""
+    cases = random_relief(kind)
+    found = limit_with_relief(*cases)
+    by_cone_alone(monkeypatch)
+    np.testing.assert_allclose(limit_with_relief(*cases).factor, found.factor, rtol=1e-10)
+
+
+@pytest.mark.parametrize("n", [2, 3, 6, 30])
+@pytest.mark.parametrize("signs", [(1.0,), (-0.3, 0.0, 1.0)])
+def test_hardly_a_relief_is_searched(n: int, signs: tuple[float, ...], left: dict[str, int]) -> None:
+    """All but the loads that pressing alone carries, and cases in which a single point is closed without it."""
+    rng = np.random.default_rng([n, len(signs)])
+    b, r = rng.uniform(1e3, 1e4, (2000, n)) * (rng.random((2000, n)) < 0.9), rng.uniform(-100.0, 100.0, (2000, n, 2))
+    relieved = (
+        rng.uniform(0.0, 1.0, (2000, n)) * 10.0 ** rng.uniform(2.0, 4.5, (2000, 1)) * rng.choice(signs, (2000, n))
+    )
+    c = rng.normal(size=(2000, 3)) * [1e4, 1e4, 1e6]
+    answer = limit_with_relief(b, relieved, r, c)
+    finite = np.isfinite(answer.factor)
+    assert left["search"] <= 20 + (~finite | ((b > 0.0).sum(-1) < 2)).sum() and left["cone"] <= 20
+    assert finite.all() or len(signs) > 1
+    bound = np.maximum(0.0, b - np.where(finite, answer.factor, 0.0)[:, None] * relieved)
+    audit_tractions(bound[finite], r[finite], c[finite], Limit(**{k: v[finite] for k, v in vars(answer).items()}))
+
+
+def test_no_relief_is_not_solved_twice(some, monkeypatch: pytest.MonkeyPatch) -> None:
+    """A case without relief is one of `limit`, digit for digit, and so is such a row among others."""
+    b, r, c, answer = some
+    monkeypatch.setattr(relief, "least_work", None)
+    assert (limit_with_relief(b, 0.0 * b, r, c).factor == answer.factor).all()
+    monkeypatch.undo()
+    rows = np.where(np.arange(60) % 2, 0.3, 0.0)[:, None]
+    c = np.where(np.arange(60)[:, None] % 5, c, 0.0)
+    mixed, plain = limit_with_relief(b, rows * b, r, c), limit(b, r, c)
+    assert (mixed.factor[::2] == plain.factor[::2]).all() and (mixed.factor[::5] == np.inf).all()
+    np.testing.assert_allclose(
+        mixed.factor, plain.factor / (1.0 + rows[:, 0] * np.minimum(plain.factor, 1e300)), rtol=1e-10
+    )
+
+
+def test_one_bolt_with_relief() -> None:
+    """b/(V + q) in line with the force; 0 with a moment about it; infinite where pressing outgrows the shear. Derived."""
+    load = [(3.0, 4.0, 7.0 * 4.0), (3.0, 4.0, 99.0), (3.0, 4.0, 7.0 * 4.0)]
+    answer = limit_with_relief([[10.0]], [[2.0], [2.0], [-6.0]], [(7.0, 0.0)], load)
+    assert answer.factor == pytest.approx([10.0 / 7.0, 0.0, np.inf], rel=1e-14)
+    assert answer.tractions[0, :, 0] == pytest.approx([30.0 / 7.0, 40.0 / 7.0], rel=1e-14)
 
 
 @pytest.mark.parametrize("heavy", [1.0, 1e4, 1e8, 1e12])

@@ -1,8 +1,9 @@
 """The gross-slip load of points under Coulomb friction, with its proof: tractions that carry it, a motion it cannot exceed.
 
 The two theorems of limit analysis. Tractions within their bounds that balance `factor` times the load prove that the factor is reached;
-a rigid motion on which the load does unit work proves that the work of the bounds on it is not exceeded. A second-order-cone
-programme supplies both. However it got there, the answer is as good as the gap between the two.
+a rigid motion on which the load does unit work proves that the work of the bounds on it is not exceeded. Newton's descent to the
+motion of least work supplies both; a second-order-cone programme does where that fails, mostly with bounds that are orders of magnitude
+apart. However it got there, the answer is as good as the gap between the two.
 """
 
 from __future__ import annotations
@@ -12,12 +13,12 @@ from numpy.typing import ArrayLike
 
 from slip.base.errors import NotConverged
 from slip.base.records import record
-from slip.friction.march.cone import Array, Index, cross, dot, largest_factor, length, turned
+from slip.friction.march.cone import Array, Index
+from slip.friction.march.descent import least_work
+from slip.friction.march.frame import Frame, by_cone
 
 GAP_ALLOWED = 1e-8  # relative; a larger gap is not an answer
-CHUNK = 15_000  # points worked on together: their arrays stay in the cache
-ON_LINE = 1e-15  # a line of action this near to a point, in parts of the lengths at hand, goes through it
-TIE = 1e-13  # turning about a point or pure shifting is preferred where it bounds as well as this
+CHUNK = 40_000  # points worked on together: few enough for their arrays to stay in the cache, enough to hide the calls
 
 
 @record(eq=False)
@@ -26,11 +27,11 @@ class Limit:
 
     factor (...): the load reaches this multiple, proven by `tractions`; inf for a load of zero, 0 for one that cannot be carried.
     upper (...): it reaches no more than this, proven by `motion`.
-    gap (...): (upper - factor)/upper, at most 1e-8, usually 1e-12; 0 where both are 0 or both infinite.
+    gap (...): (upper - factor)/upper, at most 1e-8, usually below 1e-12; 0 where both are 0 or both infinite.
     motion (..., 3): shift of the origin and turn (vx, vy, w) on which the load does unit work [1/N, 1/N, 1/(N mm)]; 0 for no load.
     centre (..., 2): instant centre [mm]; (inf, inf) where the motion is a pure shift, or where there is none.
     tractions (..., 2, n): forces of the points at the limit [N]: in balance with factor times the load, each within its bound.
-    iterations (...): steps of the cone programme; 0 where the answer needed none.
+    iterations (...): steps of the method that found the answer, Newton's or the cone programme's; 0 where it needed none.
     """
 
     factor: Array
@@ -119,57 +120,18 @@ def checked(bound: ArrayLike, positions: ArrayLike, load: ArrayLike) -> tuple[Ar
 
 def _solve(b: Array, r: Array, c: Array) -> tuple[Array, Array, Array, Array, Index]:
     """Factor, upper bound, motion, tractions, iterations of a chunk of cases."""
-    every = np.arange(b.shape[1])
-    # Seen from the strongest point: where one bound outweighs the rest, its small motion must not drown in rounding.
-    pivot = b.argmax(0)
-    home = r[:, pivot, every]
-    arm = r - home[:, None]
-    reach = length(np.where(b > 0.0, arm, 0.0)).max(0)
-    force, moment = length(c), _moment(home, r, c)
-    axis = np.where(force > 0.0, c[:2] / force, [[1.0], [0.0]])
-
+    frame = Frame(b, r, c, b > 0.0)
     # All strength in one place: it carries a force through that place, and nothing else.
-    through = (reach == 0.0) & (force > 0.0) & (moment == 0.0)
-    factor = np.where(through, b.sum(0) / force, 0.0)
-    share = np.where(through, axis[:, None], np.zeros_like(r))
-    shift, turn, iterations = np.zeros_like(home), np.zeros_like(force), np.zeros(every.size, dtype=np.int64)
-
-    go = np.flatnonzero((reach > 0.0) & ((force > 0.0) | (moment != 0.0)))
-    if go.size:
-        bound, long, strong = b[:, go], reach[go], b[:, go].max(0)
-        size = np.maximum(force[go], np.abs(moment[go] / long))
-        frame = np.array([dot(axis[:, None, go], arm[..., go]), cross(axis[:, None, go], arm[..., go])]) / long
-        t, s, w, f, iterations[go] = largest_factor(bound / strong, frame, force[go] / size, moment[go] / long / size)
-        share[..., go], factor[go], turn[go] = turned(axis[:, None, go], t), f * strong / size, w / long
-        # The point that moves least holds the motion to the most digits.
-        speed = length(s) * strong / bound
-        pivot[go] = np.where(bound > 0.0, speed, np.inf).argmin(0)
-        least = s[:, pivot[go], np.arange(go.size)] * strong / b[pivot[go], go]
-        shift[:, go] = turned(axis[:, go], least)
-
-    motion, upper = _bounding(b, r, c, r[:, pivot, every], shift, turn)
-    idle = (force == 0.0) & (c[2] == 0.0)
-    motion[:, idle] = 0.0
-    factor[idle] = upper[idle] = np.inf
-    return factor, upper, motion, b * share, iterations
-
-
-def _moment(point: Array, r: Array, c: Array) -> Array:
-    """Moment of the loads c about `point`; 0 where it is no more than the rounding of the data."""
-    moment = c[2] - cross(point, c)
-    return np.where(np.abs(moment) <= ON_LINE * (np.abs(c[2]) + length(c) * length(r).max(0)), 0.0, moment)
-
-
-def _bounding(b: Array, r: Array, c: Array, pivot: Array, shift: Array, turn: Array) -> tuple[Array, Array]:
-    """The best of three bounding motions, about the origin: turning about the pivot, a pure shift along the force, the one found."""
-    none = np.zeros_like(turn)
-    arm = r - pivot[:, None]
-    moment = _moment(pivot, r, c)
-    about = np.array([[none, none, 1.0 / moment], [*(c[:2] / dot(c, c)), none], [*shift, turn]])
-    about[2] /= dot(c, shift) + moment * turn
-    work = np.array([(b * length(np.array([vx - w * arm[1], vy + w * arm[0]]))).sum(0) for vx, vy, w in about])
-    work[~np.isfinite(work)] = np.inf
-    best, every = (work * [[1.0], [1.0], [1.0 + TIE]]).argmin(0), np.arange(turn.size)
-    vx, vy, w = about[best, :, every].T
-    # Formed like this, a pivot that rests is at rest to the last digit for whoever multiplies it out again.
-    return np.array([vx + w * pivot[1], vy - w * pivot[0], w]), work[best, every]
+    through = (frame.reach == 0.0) & (frame.force > 0.0) & (frame.moment == 0.0)
+    factor, iterations = np.where(through, b.sum(0) / frame.force, 0.0), np.zeros(b.shape[1], dtype=np.int64)
+    tractions = b * np.where(through, frame.axis[:, None], 0.0)
+    found = least_work(frame.bound, frame.place, frame.pull, frame.twist)
+    hard = np.flatnonzero(~found.sure)
+    if hard.size:
+        by_cone(frame, found, hard)
+    go = frame.go
+    tractions[..., go], factor[go], iterations[go] = frame.forces(found), found.factor * frame.scale, found.steps
+    motion, upper = frame.bounding(b, found)
+    motion[:, frame.idle] = 0.0
+    factor[frame.idle] = upper[frame.idle] = np.inf
+    return factor, upper, motion, tractions, iterations

@@ -2,6 +2,9 @@
 
 All loads grow by one factor f; the bound of a point is max(0, bound - f relief). Divided by f this falls as f rises, so the factors
 that can be carried reach from 0 to one largest value, and the tractions that prove it prove every smaller factor in proportion.
+
+Newton's descent with the bounds of the factor that each motion allows finds it; what that leaves (mostly loads that pressing alone
+carries) is searched with limits of fixed bounds.
 """
 
 from __future__ import annotations
@@ -9,10 +12,14 @@ from __future__ import annotations
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
 
-from slip.friction.march.cone import Array, Index
-from slip.friction.march.limit import Limit, checked, limit, proven
+from slip.base.records import record
+from slip.friction.march.cone import Array, Index, length
+from slip.friction.march.descent import least_work
+from slip.friction.march.frame import Frame
+from slip.friction.march.limit import CHUNK, Limit, checked, limit, proven
+from slip.friction.march.motions import crossing
 
-GAP_SOUGHT = 2e-12  # relative; the programme behind each step proves about 1e-12
+GAP_SOUGHT = 2e-12  # relative; the solver behind each step proves about 1e-12
 GAP_FAIR = 1e-11  # no more is asked of the two sides
 MOST_STEPS = 60  # 3 to 6 are usual
 # How far below the upper bound its bounds are taken, and what they may then miss of the factor.
@@ -35,16 +42,8 @@ def relieved_factor(bound: ArrayLike, relief: ArrayLike, slip: ArrayLike) -> Arr
     b, q, s = np.broadcast_arrays(*(np.asarray(a, dtype=float) for a in (bound, relief, slip)))
     if not np.isfinite(s).all():
         raise ValueError("slips must be finite: a load of zero has no motion of unit work")
-    closed = (b > 0.0) | (q < 0.0)
-    while True:
-        rate = 1.0 + np.where(closed, q * s, 0.0).sum(-1)
-        with np.errstate(divide="ignore", invalid="ignore"):
-            factor = np.where(rate > 0.0, np.where(closed, b * s, 0.0).sum(-1) / rate, np.inf)
-            # The work is convex in f, so this factor is never too large: what is open by then stays open.
-            still = closed & (b > factor[..., None] * q)
-        if (still == closed).all():
-            return factor[()]
-        closed = still
+    with np.errstate(divide="ignore", invalid="ignore"):
+        return crossing(*(np.moveaxis(a, -1, 0) for a in (b, q, s)))[()]
 
 
 def limit_with_relief(bound: ArrayLike, relief: ArrayLike, positions: ArrayLike, load: ArrayLike) -> Limit:
@@ -67,15 +66,71 @@ def limit_with_relief(bound: ArrayLike, relief: ArrayLike, positions: ArrayLike,
     q = np.broadcast_to(reliefs, (*lead, b.shape[-1])).reshape(b.shape)
     if not np.isfinite(q).all():
         raise ValueError("relief must be finite")
-    search = _Search(b, q, r, c)
-    search.press()
-    go = np.flatnonzero(search.lower < search.upper)
-    for _ in range(MOST_STEPS):
-        if not go.size:
-            break
-        go = go[search.attempt(go)]
-    search.step_back()
-    return proven(lead, search.lower, search.upper, search.motion, search.tractions, search.iterations)
+    if not q.any():
+        return limit(bounds, positions, load)
+    cases, n = b.shape
+    lower, upper = np.empty((2, cases))
+    found = _Answers(lower, upper, np.empty((cases, 3)), np.empty((cases, 2, n)), np.empty(cases, dtype=np.int64))
+    level = ~q.any(-1)
+    at = limit(b[level], r[level], c[level])
+    found.put(np.flatnonzero(level), at.factor, at.upper, at.motion, at.tractions, at.iterations)
+    hard = _descended(np.flatnonzero(~level), b, q, r, c, found)
+    if hard.size:
+        search = _Search(b[hard], q[hard], r[hard], c[hard])
+        search.run()
+        found.put(hard, search.lower, search.upper, search.motion, search.tractions, search.iterations)
+    return proven(lead, found.lower, found.upper, found.motion, found.tractions, found.iterations)
+
+
+def _descended(those: Index, b: Array, q: Array, r: Array, c: Array, answers: _Answers) -> Index:
+    """Put the answers of Newton's descent for the flat cases `those`; which of them it cannot prove."""
+    hard = [np.zeros(0, dtype=np.int64)]
+    width = max(1, CHUNK // b.shape[1])
+    for first in range(0, those.size, width):
+        at = those[first : first + width]
+        parts = (np.ascontiguousarray(a) for a in (b[at].T, q[at].T, r[at].transpose(2, 1, 0), c[at].T))
+        # As in `limit`: what comes of 0/0 is judged by the gap.
+        with np.errstate(all="ignore"):
+            lower, upper, motion, tractions, steps, sure = _descent(*parts)
+        answers.put(at, lower, upper, motion.T, np.moveaxis(tractions, -1, 0), steps)
+        hard.append(at[~sure])
+    return np.concatenate(hard)
+
+
+def _descent(b: Array, q: Array, r: Array, c: Array) -> tuple[Array, Array, Array, Array, Index, NDArray[np.bool_]]:
+    """Lower and upper factor, motion, tractions, iterations of a chunk of cases, cases last, and which of them are proven."""
+    frame = Frame(b, r, c, (b > 0.0) | (q < 0.0))
+    go, cases = frame.go, b.shape[1]
+    found = least_work(frame.bound, frame.place, frame.pull, frame.twist, q[:, go] / frame.size)
+    lower, steps, tractions = np.zeros(cases), np.zeros(cases, dtype=np.int64), np.zeros_like(r)
+    lower[go], steps[go], tractions[..., go] = found.factor * frame.scale, found.steps, frame.forces(found)
+    motion, _ = frame.bounding(np.maximum(0.0, b - lower * q), found)
+    upper = crossing(b, q, length(np.array([motion[0] - motion[2] * r[1], motion[1] + motion[2] * r[0]])))
+    # All strength in one place, and the force through it: nothing to be sought.
+    through = (frame.reach == 0.0) & (frame.force > 0.0) & (frame.moment == 0.0) & np.isfinite(upper)
+    lower[through] = upper[through]
+    tractions[..., through] = (np.maximum(0.0, b - lower * q) * frame.axis[:, None])[..., through]
+    sure = (np.abs(upper - lower) <= GAP_SOUGHT * upper) & np.isfinite(upper)
+    sure[go] &= found.sure
+    motion[:, frame.idle] = 0.0
+    lower[frame.idle] = upper[frame.idle] = np.inf
+    return lower, upper, motion, tractions, steps, sure | frame.idle
+
+
+@record(eq=False)
+class _Answers:
+    """Both sides, motions, tractions and iterations of flat cases, filled part by part."""
+
+    lower: Array
+    upper: Array
+    motion: Array
+    tractions: Array
+    iterations: Index
+
+    def put(self, at: Index, lower: Array, upper: Array, motion: Array, tractions: Array, iterations: Index) -> None:
+        """Write the cases `at`."""
+        self.lower[at], self.upper[at], self.motion[at] = lower, upper, motion
+        self.tractions[at], self.iterations[at] = tractions, iterations
 
 
 class _Search:
@@ -90,6 +145,16 @@ class _Search:
         self.iterations = start.iterations.copy()
         loaded = np.flatnonzero(c.any(-1))
         self._bound_above(loaded, start.motion[loaded])
+
+    def run(self) -> None:
+        """Close in on the answers."""
+        self.press()
+        go = np.flatnonzero(self.lower < self.upper)
+        for _ in range(MOST_STEPS):
+            if not go.size:
+                break
+            go = go[self.attempt(go)]
+        self.step_back()
 
     def press(self) -> None:
         """What the pressed points alone carry per unit of factor: all of it, or a motion that bounds every factor."""
