@@ -47,14 +47,16 @@ class Patch:
 def from_profile(radii: Array, profile: Array, rings: int, around: int) -> Patch:
     """The patch of a pressure that is linear between `radii` [mm], `profile` up to any factor, both (k,).
 
-    Rings lie at Gauss points of the radius, and a hair-thin one at the rim, where slip begins; each has `around` equal points, and
-    the shares add up to 1.
+    Rings are as wide as Gauss weights of the radius, finer at both ends, and a hair-thin one lies at the rim, where slip begins; each
+    has `around` equal points at the centre of its force, so that force and friction radius are exact. The shares add up to 1.
     """
     inner, outer = float(radii[0]), float(radii[-1])
-    places, weights = np.polynomial.legendre.leggauss(rings)
-    r = np.append(inner + (places + 1) / 2 * (outer - inner), outer - RIM * (outer - inner))
-    areas = 2 * np.pi * r * np.append(weights / 2, RIM) * (outer - inner)
-    forces = np.interp(r, radii, profile) * areas
+    _, weights = np.polynomial.legendre.leggauss(rings)
+    bounds = inner + (outer - inner) * np.concatenate([[0.0], (1 - RIM) * np.cumsum(weights / 2), [1.0]])
+    forces, arms = _integrals(radii, profile, bounds)
+    middle = (bounds[1:] + bounds[:-1]) / 2
+    r = np.where(forces > 0, arms / np.where(forces > 0, forces, 1.0), middle)
+    areas = np.pi * (bounds[1:] ** 2 - bounds[:-1] ** 2)
     total = forces.sum()
     return Patch(
         _around(r, around),
@@ -65,6 +67,22 @@ def from_profile(radii: Array, profile: Array, rings: int, around: int) -> Patch
         outer,
         friction_radius(r, forces),
     )
+
+
+def _integrals(radii: Array, profile: Array, bounds: Array) -> tuple[Array, Array]:
+    """Force, and force times radius, of a piecewise linear pressure between neighbouring bounds (k + 1,), each (k,)."""
+    r = np.union1d(radii, bounds)
+    p = np.interp(r, radii, profile)
+    middle, step = (r[1:] + r[:-1]) / 2, np.diff(r)
+    start = np.searchsorted(r, bounds[:-1])
+
+    def between(power: int) -> Array:
+        ends, centre = p * r**power, (p[1:] + p[:-1]) / 2 * middle**power
+        pieces = 2 * np.pi * step / 6 * (ends[1:] + 4 * centre + ends[:-1])  # Simpson's rule is exact for these
+        sums: Array = np.add.reduceat(pieces, start)
+        return sums
+
+    return between(1), between(2)
 
 
 def thin_ring(radius: float, around: int) -> Patch:

@@ -8,12 +8,14 @@ from slip.base.errors import InputError, Problems
 from slip.base.notes import Note
 from slip.base.records import record
 from slip.joint.joint import Joint
-from slip.joint.plates import Plate
 from slip.pressure.patch import Patch, from_profile, thin_ring
-from slip.pressure.receding import Body, contact
+from slip.pressure.receding import Engagement, contacts
+from slip.pressure.rings import Body
 
 RINGS, AROUND = 12, 72  # of a single bolt under torque; 24 x 144 changes the limit load by less than 1e-3
 FEW_RINGS, FEW_AROUND = 10, 16  # of each bolt of a pattern, where partial slip sums over many points
+# Fall of a thread's pull along its depth: middling for partial slip, and what narrows the contact for a torque.
+EVEN, NEAR_FACE = 0.0, 1.0
 
 
 @record
@@ -34,36 +36,68 @@ def pressure(joint: Joint, turning: bool) -> Pressure:
     """
     single = joint.pattern.count == 1
     known = joint.interface.roughness is not None or joint.interface.tangential_stiffness is not None
-    profile = _profile(joint) if known or (single and turning) else None
-    patch = (
-        None if profile is None else from_profile(*profile, *((RINGS, AROUND) if single else (FEW_RINGS, FEW_AROUND)))
-    )
-    if not (single and turning):
-        return Pressure(patch, None, "", ())
+    turned = single and turning
+    rings = (RINGS, AROUND) if single else (FEW_RINGS, FEW_AROUND)
+    profile = _profile(joint, EVEN) if known or turned else None
+    patch = None if profile is None else from_profile(*profile, *rings)
+    notes = () if patch is None else _engaged_note(joint)
+    if not turned:
+        return Pressure(patch, None, "", notes)
     if patch is not None and all(plate.outline is not None for plate in joint.plates):
-        radius = joint.system.say(patch.friction_radius, "length")
+        near = _profile(joint, NEAR_FACE) if joint.bolt.tapped else None
+        torque_patch = patch if near is None else from_profile(*near, *rings)
+        radius = joint.system.say(torque_patch.friction_radius, "length")
         note = Note("friction-radius", f"plates flat round the bolt: its torque is held at {radius}", "plate.outline")
-        return Pressure(patch, patch, "derived", (note,))
+        return Pressure(patch, torque_patch, "derived", (*notes, note))
     if joint.bolt.hole_diameter is None:
         expected = "hole_diameter, the radius at which a single bolt holds a torque"
         raise Problems([InputError("missing-key", "bolt.hole_diameter", "nothing", expected, "add it", joint.file)])
     note = Note("friction-radius-hole", "torque on one bolt is held at the hole radius", "plate")
-    return Pressure(patch, thin_ring(joint.bolt.hole_diameter / 2, AROUND), "practice", (note,))
+    return Pressure(patch, thin_ring(joint.bolt.hole_diameter / 2, AROUND), "practice", (*notes, note))
 
 
-def _profile(joint: Joint) -> tuple[np.ndarray, np.ndarray] | None:
-    """Pressure along the radius between the first plate and the rest of the stack, or None.
+def _profile(joint: Joint, fall: float) -> tuple[np.ndarray, np.ndarray] | None:
+    """Pressure along the radius of the sliding face, or None when the file does not describe the plates; `fall` of a thread's pull.
 
-    Not for tapped joints, whose thread pulls from inside the lower plate; washers are left out, which narrows the contact.
+    The face is the one under the first plate; of several sliding faces the one with the least friction radius. Washers are left out,
+    which narrows the contact.
     """
     bolt, plates = joint.bolt, joint.plates
-    if len(plates) < 2 or bolt.tapped or bolt.hole_diameter is None or bolt.bearing_diameter is None:
+    if len(plates) < 2 or bolt.hole_diameter is None or bolt.bearing_diameter is None:
         return None
-    if any(plate.material is None for plate in plates):
+    thread = _engagement(joint, fall)
+    if bolt.tapped and thread is None:
         return None
-    found = contact(_body(plates[:1]), _body(plates[1:]), bolt.hole_diameter / 2, bolt.bearing_diameter / 2)
+    bodies = [Body(p.thickness, p.material.youngs_modulus, p.material.poissons_ratio) for p in plates if p.material]
+    if len(bodies) < len(plates):
+        return None
+    found = contacts(bodies, bolt.hole_diameter / 2, bolt.bearing_diameter / 2, thread)
     edges = [p.outline.edge_distance(joint.pattern.positions).min() for p in plates if p.outline is not None]
-    return _within(found.radii, found.pressure, min(edges, default=np.inf))
+    faces = found if joint.interface.parallel_faces > 1 else found[:1]
+    profiles = [_within(face.radii, face.pressure, min(edges, default=np.inf)) for face in faces]
+    return min(profiles, key=_friction_radius)
+
+
+def _friction_radius(profile: tuple[np.ndarray, np.ndarray]) -> float:
+    radii, pressure = profile
+    return from_profile(radii, pressure, RINGS, 1).friction_radius
+
+
+def _engagement(joint: Joint, fall: float) -> Engagement | None:
+    """The thread in the last plate, as deep as its nominal diameter where the plate is; None with a nut, or an unknown thread."""
+    thread = joint.bolt.thread
+    if not joint.bolt.tapped or thread is None:
+        return None
+    return Engagement(thread.diameter / 2, min(joint.plates[-1].thickness, thread.diameter), fall)
+
+
+def _engaged_note(joint: Joint) -> tuple[Note, ...]:
+    """What is assumed of the thread in the last plate; nothing with a nut."""
+    thread = _engagement(joint, EVEN)
+    if thread is None:
+        return ()
+    length = joint.system.say(thread.length, "length")
+    return (Note("thread-engagement", f"thread engaged over {length} from the face on", "bolt.far_end"),)
 
 
 def _within(radii: np.ndarray, pressure: np.ndarray, edge: float) -> tuple[np.ndarray, np.ndarray]:
@@ -73,11 +107,3 @@ def _within(radii: np.ndarray, pressure: np.ndarray, edge: float) -> tuple[np.nd
     edge = max(edge, float(radii[1]))
     kept = radii < edge
     return np.append(radii[kept], edge), np.append(pressure[kept], np.interp(edge, radii, pressure))
-
-
-def _body(plates: tuple[Plate, ...]) -> Body:
-    """Plates below the face as one: thicknesses added, moduli by their compliance in series."""
-    thickness = sum(p.thickness for p in plates)
-    soft = sum(p.thickness / p.material.youngs_modulus for p in plates if p.material is not None)
-    ratio = sum(p.thickness * p.material.poissons_ratio for p in plates if p.material is not None) / thickness
-    return Body(thickness, thickness / soft, ratio)

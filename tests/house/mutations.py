@@ -128,9 +128,23 @@ MUTATIONS = (
     Mutation(
         "clamp on the rings of the patch",
         "pressure/patch.py",
-        "forces = np.interp(r, radii, profile) * areas",
-        "forces = np.interp(r, radii, profile) / areas",
+        "return between(1), between(2)",
+        "return between(0), between(1)",
         "tests/derived/test_examples.py",
+    ),
+    Mutation(
+        "flanks of a thread push its hole open",
+        "pressure/receding.py",
+        "= thread.wedge * pull",
+        "= -thread.wedge * pull",
+        "tests/converge/test_receding.py",
+    ),
+    Mutation(
+        "face under a plate between others",
+        "pressure/receding.py",
+        "= weights, -weights",
+        "= weights, weights",
+        "tests/converge/test_receding.py",
     ),
     Mutation(
         "what holds",
@@ -138,6 +152,27 @@ MUTATIONS = (
         "holds=bool(factor >= least),\n        decides=decides",
         "holds=bool(factor <= least),\n        decides=decides",
         "tests/derived/test_joint_files.py",
+    ),
+    Mutation(
+        "ends of a lap",
+        "friction/model_strips.py",
+        "P * h / (2 * EA) - D",
+        "P * h / EA - D",
+        "tests/derived/test_pressed_face.py",
+    ),
+    Mutation(
+        "blocks thicker than the patch is wide",
+        "friction/models.py",
+        "all(t > width",
+        "all(2 * t > width",
+        "tests/derived/test_partial_blocks.py",
+    ),
+    Mutation(
+        "turning moment on a face of known pressure",
+        "friction/known_pressure.py",
+        "arms[0] * vy - arms[1] * vx",
+        "arms[0] * vy + arms[1] * vx",
+        "tests/derived/test_pressed_face.py",
     ),
 )
 
