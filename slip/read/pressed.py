@@ -85,11 +85,6 @@ def _sizes(section: Section, shape: str) -> Sizes:
         length = section.need("length", "the length of a cylinder", 'add length = "20 mm"')
     elif shape not in ROUND:
         length = section.get("length")
-    if shape == "flat" and length is not None:
-        remedy = "leave out length, or take a rounded flat with the radius of its edge"
-        raise section.stop(
-            "length", "contact-flat-plane", "a plane flat", "a round flat, whose edge may be sharp", remedy
-        )
     return radius, width, length
 
 

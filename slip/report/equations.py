@@ -8,12 +8,13 @@ from typing import Any
 
 import numpy as np
 
-from slip.assess import Assessment
+from slip.assess import Assessment, PressedAssessment
 from slip.base.errors import InputError, Problems
 from slip.base.records import record
 from slip.base.tables import Row, table
 from slip.base.trace import Step
 from slip.joint.joint import Joint
+from slip.joint.surface import Interface
 from slip.read import library
 from slip.verdict.checks import first_least
 from slip.verdict.gross_slip import End
@@ -58,8 +59,8 @@ def explain(assessment: Assessment, case: str | None = None, bolt: str | None = 
     """
     joint, governing = assessment.joint, assessment.verdict.governing
     case = case or governing.case or joint.cases[0].name
-    index = _find(assessment, "case", case, [c.name for c in joint.cases])
-    which = None if bolt is None else _find(assessment, "bolt", bolt, list(joint.pattern.names))
+    index = find(assessment, "case", case, [c.name for c in joint.cases])
+    which = None if bolt is None else find(assessment, "bolt", bolt, list(joint.pattern.names))
     ends = [end for end in assessment.verdict.ends if end.case == index]
     if which is None and case == governing.case:
         ends = [end for end in ends if end.end == governing.end]
@@ -73,7 +74,8 @@ def explain(assessment: Assessment, case: str | None = None, bolt: str | None = 
     return Explanation(case, end.end, joint.pattern.names[shown], tuple(_lines(assessment, end, shown)))
 
 
-def _find(assessment: Assessment, what: str, name: str, names: list[str]) -> int:
+def find(assessment: Assessment | PressedAssessment, what: str, name: str, names: list[str]) -> int:
+    """Place of a name among those of a case or bolt; raises Problems for another, with the names that are known."""
     if name in names:
         return names.index(name)
     known = ", ".join(names[:8]) + (", .." if len(names) > 8 else "")
@@ -89,13 +91,14 @@ def _lines(assessment: Assessment, end: End, bolt: int) -> Iterator[Line]:
     held, grown = (_worst(assessment, end, f) for f in (slipping.group.factor, slipping.group_load_factor))
     alone, alone_grown = (_worst(assessment, end, f) for f in (slipping.force_safety, slipping.force_load_factor))
     group, force = slipping.group_trace.steps, slipping.force_trace.steps
-    face = assessment.partial.stiffness
+    face, partial = assessment.partial.stiffness, assessment.partial.of(end.case, end.end)
     parts = (
         ("before load", clamp.assembly.trace.steps, state),
         ("load", clamp.states.trace.steps, state),
         ("clamp", clamp.ledger.trace.steps, state),
         ("slip of the bolt", slipping.trace.steps, state),
         ("stiffness of the face", face.trace.steps if face else [], state),
+        (f"partial slip, {partial.model}" if partial else "", partial.trace.steps if partial else [], state),
         ("slip of the group", group[: len(group) // 2], held),
         ("slip of the group", group[len(group) // 2 :], grown),
         ("force alone", force[: len(force) // 2], alone),
@@ -104,7 +107,7 @@ def _lines(assessment: Assessment, end: End, bolt: int) -> Iterator[Line]:
     shape, seen = clamp.ledger.clamp_low.shape, set[tuple[str, str]]()
     for title, steps, row in parts:
         said = title if row == state else f"{title}, another combination of signs"
-        for line in _picked(said, steps, shape, row, bolt):
+        for line in picked(said, steps, shape, row, bolt):
             if (line.name, line.put_in) not in seen:
                 seen.add((line.name, line.put_in))
                 yield line
@@ -126,9 +129,7 @@ def _inputs(joint: Joint) -> Iterator[Line]:
         return Line("inputs", name, symbol, "value", shown, value, unit, *origin, "")
 
     face, bolt = joint.interface, joint.bolt
-    name, origin = "lowest friction of the sliding face", (face.friction_source, face.friction_basis)
-    if row := _friction_row(face.friction_source):
-        name, origin = f"{name}, {face.friction_source}", (row["source"], row["basis"])
+    name, origin = friction_said(face)
     yield line(name, "mu", face.friction_low, "", origin)
     if bolt.thread:
         origin = bolt.thread.source, bolt.thread.basis
@@ -154,6 +155,14 @@ def _inputs(joint: Joint) -> Iterator[Line]:
             yield line(f"modulus of {name}, {m.name}", "E", m.youngs_modulus, "MPa", (m.source, m.basis))
 
 
+def friction_said(face: Interface) -> tuple[str, tuple[str, str]]:
+    """How the lowest friction is called, and its source and basis: of the table row that the file names, else of the file."""
+    name, origin = "lowest friction of the sliding face", (face.friction_source, face.friction_basis)
+    if row := _friction_row(face.friction_source):
+        return f"{name}, {face.friction_source}", (row["source"], row["basis"])
+    return name, origin
+
+
 def _friction_row(words: str) -> Row | None:
     """The row of the friction table that a joint names as its source, None where the file says another."""
     return next((row for row in table("friction") if f"{row['pair']}, {row['lubrication']}" == words), None)
@@ -165,7 +174,7 @@ def _origin(joint: Joint, key: str, row: Row | None) -> tuple[str, str]:
     return (row["source"], row["basis"]) if assumed and row is not None else FILE
 
 
-def _picked(group: str, steps: Iterable[Step], shape: tuple[int, int], state: int, bolt: int) -> Iterator[Line]:
+def picked(group: str, steps: Iterable[Step], shape: tuple[int, int], state: int, bolt: int) -> Iterator[Line]:
     """Steps with the values of one state and bolt; a result that is not finite (nothing limits) has no line."""
 
     def pick(value: Any) -> float:

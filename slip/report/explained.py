@@ -3,8 +3,9 @@
 from __future__ import annotations
 
 import textwrap
+from collections.abc import Sequence
 
-from slip.assess import Assessment
+from slip.assess import Assessment, PressedAssessment
 from slip.base.formulas import citation
 from slip.report.checked import WIDTH
 from slip.report.equations import Explanation
@@ -15,8 +16,13 @@ from slip.report.words import plain, wrapped
 def explain_text(explanation: Explanation, assessment: Assessment) -> str:
     """The lines of an explanation as blocks, each with formula, numbers put in, result, source key and basis; citations last."""
     place = ", ".join([plain(explanation.case), *end_of(assessment, explanation.case, explanation.end)])
-    lines = [f"Every number of {place}, bolt {plain(explanation.bolt)}, in N, mm, MPa", *verdict_lines(assessment)]
-    system = assessment.joint.system
+    head = [f"Every number of {place}, bolt {plain(explanation.bolt)}, in N, mm, MPa", *verdict_lines(assessment)]
+    return told(head, explanation, assessment)
+
+
+def told(head: Sequence[str], explanation: Explanation, assessment: Assessment | PressedAssessment) -> str:
+    """The first lines, then every number as a block, assumptions, warnings and citations."""
+    lines, system = list(head), assessment.joint.system
     if system.name != "N mm":
         lines.append(f"The file is in {system.name}: 1 lbf = 4.4482216 N, 1 in = 25.4 mm, 1 psi = 0.0068947573 MPa.")
     group = ""

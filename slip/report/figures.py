@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import base64
 import io
 import warnings
 from collections.abc import Iterator
@@ -55,7 +56,7 @@ class View:
 
 
 @contextmanager
-def _look(ink: Ink) -> Iterator[None]:
+def look(ink: Ink) -> Iterator[None]:
     """The library's own defaults, whatever the reader has set up, and ours on top."""
     ours: Any = {
         "axes.edgecolor": ink.faint,
@@ -79,7 +80,7 @@ def pattern_figure(assessment: Assessment, end: End, units: System | None = None
     """
     system = units or assessment.joint.system
     view = _view(assessment, end, system)
-    with _look(ink):
+    with look(ink):
         span = view.high - view.low
         height = float(np.clip(WIDTH * span[1] / span[0], 2.0, 3.8)) + 1.1
         figure = Figure(figsize=(WIDTH, height), layout="constrained")
@@ -93,11 +94,16 @@ def pattern_figure(assessment: Assessment, end: End, units: System | None = None
     return figure
 
 
+def image(figure: Figure, ink: Ink = LIGHT) -> str:
+    """The figure as the address of an image that a page holds in itself."""
+    return "data:image/svg+xml;base64," + base64.b64encode(svg(figure, ink)).decode("ascii")
+
+
 def svg(figure: Figure, ink: Ink = LIGHT) -> bytes:
     """The figure as SVG: same figure, same bytes. To be embedded as an image, so that ids of several cannot collide."""
     target = io.BytesIO()
     nothing = {"Date": None, "Creator": None, "Format": None, "Type": None}
-    with _look(ink), warnings.catch_warnings():
+    with look(ink), warnings.catch_warnings():
         warnings.filterwarnings("ignore", message="Glyph")  # the reader's fonts draw the text, ours only measures it
         figure.savefig(target, format="svg", transparent=True, metadata=nothing)
     return target.getvalue()

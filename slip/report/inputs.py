@@ -30,7 +30,7 @@ class Group:
 def groups(joint: Joint, system: System) -> list[Group]:
     """Everything that the joint's records say, apart from plates, positions and load cases, which are tables."""
     found = (
-        ("Sliding face", _interface(joint.interface, system)),
+        ("Sliding face", interface_pairs(joint.interface, system)),
         ("Bolt", _bolt(joint.bolt, system)),
         ("Tightening", _tightening(joint.tightening, system)),
         ("Losses", _losses(joint.losses, system)),
@@ -59,7 +59,8 @@ def _said(value: float | None, kind: str, system: System) -> str:
     return "" if value is None else system.say(value, kind)
 
 
-def _interface(face: Interface, system: System) -> list[Pair]:
+def interface_pairs(face: Interface, system: System) -> list[Pair]:
+    """What the sliding face says."""
     micro = "um" if system.length == "mm" else "uin"
     rough = [f"{r.label} {r.value / UNITS[micro][0]:.6g} {micro}" for r in face.roughness or ()]
     stiffness = face.tangential_stiffness
@@ -99,11 +100,12 @@ def _bolt(bolt: Bolt, system: System) -> list[Pair]:
         ("pieces in the grip, diameter over length", ", ".join(pieces)),
         ("far end", "tapped hole" if bolt.tapped else "nut"),
         ("washers under head and nut", ", ".join(washers) if any(bolt.washers) else ""),
-        ("material of bolt and washers", _material(bolt.material, system)),
+        ("material of bolt and washers", material_said(bolt.material, system)),
     ]
 
 
-def _material(material: Material, system: System) -> str:
+def material_said(material: Material, system: System) -> str:
+    """A material's name, modulus and basis."""
     return f"{plain(material.name)}, {system.say(material.youngs_modulus, 'pressure')} ({material.basis})"
 
 

@@ -11,7 +11,7 @@ import numpy as np
 from jinja2 import Environment, FileSystemLoader, StrictUndefined
 
 import slip
-from slip.assess import Assessment
+from slip.assess import Assessment, PressedAssessment
 from slip.base.formulas import citation
 from slip.base.notes import Note
 from slip.base.units import SI, System
@@ -41,14 +41,14 @@ def page(assessment: Assessment, units: System | None = None) -> str:
     system = units or assessment.joint.system
     end = _governing_end(assessment)
     explanation = explain(assessment)
-    template = _environment().get_template("page.html")
+    template = environment().get_template("page.html")
     return template.render(
         caution=CAUTION,
         title=plain(assessment.joint.title or Path(assessment.joint.file).name, 160),
-        stamp=_stamp(assessment, system),
+        stamp=page_stamp(assessment, system),
         verdict=_verdict(assessment, system),
-        assumptions=_notes(assessment.assumptions),
-        warnings=_notes(assessment.warnings),
+        assumptions=noted(assessment.assumptions),
+        warnings=noted(assessment.warnings),
         grows=assessment.joint.required.grows,
         decides=assessment.joint.required.decides,
         cases=case_table(assessment),
@@ -62,13 +62,14 @@ def page(assessment: Assessment, units: System | None = None) -> str:
         inputs=inputs.groups(assessment.joint, system),
         input_tables=input_tables(assessment, system),
         explained=f"{plain(explanation.case, NAME)}, {explanation.end} end, bolt {plain(explanation.bolt, NAME)}",
-        lines=_line_groups(explanation, system),
+        lines=line_groups(explanation, system),
         converted=system.name if system != SI else "",
-        sources=_sources(explanation),
+        sources=sources_of(explanation),
     )
 
 
-def _environment() -> Environment:
+def environment() -> Environment:
+    """The templates; what is put in is escaped."""
     loader = FileSystemLoader(TEMPLATES)
     return Environment(loader=loader, autoescape=True, undefined=StrictUndefined, trim_blocks=True, lstrip_blocks=True)
 
@@ -84,7 +85,8 @@ def _place(assessment: Assessment, end: End) -> str:
     return f"{plain(assessment.joint.cases[end.case].name, NAME)}, {end.end} end"
 
 
-def _stamp(assessment: Assessment, system: System) -> list[tuple[str, str]]:
+def page_stamp(assessment: Assessment | PressedAssessment, system: System) -> list[tuple[str, str]]:
+    """Names and values of the page's head: file, digest, program, units."""
     own = assessment.joint.system
     units = ", ".join(dict.fromkeys(system.unit(kind) for kind in ("force", "length", "pressure", "moment")))
     return [
@@ -95,7 +97,7 @@ def _stamp(assessment: Assessment, system: System) -> list[tuple[str, str]]:
     ]
 
 
-def _notes(notes: Sequence[Note]) -> list[tuple[str, str, list[str]]]:
+def noted(notes: Sequence[Note]) -> list[tuple[str, str, list[str]]]:
     """Text, key, and the texts that fold: of many notes with one code and key the first stands for all."""
     groups: dict[tuple[str, str], list[str]] = {}
     for note in notes:
@@ -123,7 +125,7 @@ def _verdict(assessment: Assessment, system: System) -> dict[str, Any]:
         "rule": f"{rule}; {growing}.",
         "reason": plain(joint.required.decides_reason, TEXT) if joint.required.decides == "group" else "",
         "facts": _facts(assessment, system),
-        "unmet": _unmet(assessment.verdict.checks),
+        "unmet": unmet(assessment.verdict.checks),
     }
 
 
@@ -178,7 +180,7 @@ def _lowest_preload(assessment: Assessment) -> tuple[float, str, str]:
     return float(low[i]), plain(names[i], NAME), plain(assessment.clamp.assembly.low_from, TEXT)
 
 
-def _unmet(checks: Sequence[Check]) -> list[str]:
+def unmet(checks: Sequence[Check]) -> list[str]:
     """What decides and is not met: a sentence for each check and reason, with the number of cases and ends."""
     groups: dict[tuple[str, str], list[Check]] = {}
     for check in checks:
@@ -227,7 +229,7 @@ def _standards(assessment: Assessment, system: System) -> Iterator[dict[str, Any
 # every number's own line
 
 
-def _line_groups(explanation: Explanation, system: System) -> list[tuple[str, list[dict[str, Any]]]]:
+def line_groups(explanation: Explanation, system: System) -> list[tuple[str, list[dict[str, Any]]]]:
     """The lines under their headings, in the order of the calculation."""
     groups: dict[str, list[dict[str, Any]]] = {}
     for line in explanation.lines:
@@ -252,7 +254,7 @@ def _line(line: Line, system: System) -> dict[str, Any]:
     }
 
 
-def _sources(explanation: Explanation) -> list[tuple[str, str]]:
+def sources_of(explanation: Explanation) -> list[tuple[str, str]]:
     """Citations of the keys that the lines name, in the order of their first use."""
     keys = dict.fromkeys(key for line in explanation.lines for key in line.source.split(";"))
     return [(key, said) for key in keys if (said := citation(key))]

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import base64
 from typing import Any
 
 import numpy as np
@@ -38,8 +37,7 @@ def picture(assessment: Assessment, end: End, system: System) -> dict[str, Any]:
 
 
 def _image(assessment: Assessment, end: End, system: System, ink: figures.Ink) -> str:
-    drawn = figures.svg(figures.pattern_figure(assessment, end, system, ink), ink)
-    return "data:image/svg+xml;base64," + base64.b64encode(drawn).decode("ascii")
+    return figures.image(figures.pattern_figure(assessment, end, system, ink), ink)
 
 
 def _centre(assessment: Assessment, end: End, system: System) -> str:

@@ -3,27 +3,33 @@
 from __future__ import annotations
 
 import json
-from collections.abc import Iterator
+import math
+from collections.abc import Iterator, Sequence
 from typing import Any
 
 import slip
 from slip.assess import PressedAssessment
 from slip.base.units import System
-from slip.friction.pressed import PressedSlip, Route
-from slip.report.machine import FORMAT, UNITS, check_entry, friction_entry, governing_entry
+from slip.friction.pressed.records import PressedSlip, Route
+from slip.report.machine import FORMAT, UNITS, check_entry, friction_entry, governing_entry, slip_answer
 from slip.report.partial import short
-from slip.report.words import CAUTION, check_name, factor, plain, wrapped
+from slip.report.words import CAUTION, NOT_ASSESSED, check_name, factor, once, plain, wrapped
 
 WIDTH = 80
+GLUE = "\N{WORD JOINER}"  # in place of a space that no line is broken at
+MOST = 8  # ends that the screen shows
 WORDS = {0: "HOLDS", 1: "FAILS"}
 KINDS = {
     "displacement": "length",
     "stiffness": "stiffness",
     "stick_ratio": "number",
+    "stick_shift": "length",
     "true_slip": "length",
     "elastic_slip": "length",
+    "edge_stress": "pressure",
     "energy_per_cycle": "energy",
 }
+BAND = ("low", "high")
 
 
 def pressed_result(assessment: PressedAssessment, units: System | None = None) -> dict[str, Any]:
@@ -39,11 +45,7 @@ def pressed_result(assessment: PressedAssessment, units: System | None = None) -
         "holds": verdict.holds,
         "friction": friction_entry(contact.interface),
         "governing": governing_entry(verdict.governing, contact.required.grows),
-        "answers": {
-            "slip": "holds" if verdict.holds else "fails",
-            "stiffness": "not assessed",
-            "cycles": "not assessed",
-        },
+        "answers": {"slip": slip_answer(verdict), "stiffness": "not assessed", "cycles": "not assessed"},
         "assumptions": [note.as_dict() for note in contact.assumptions],
         "warnings": [note.as_dict() for note in contact.warnings],
         "checks": [check_entry(check) for check in verdict.checks],
@@ -78,7 +80,7 @@ def _partial(found: PressedSlip, system: System) -> dict[str, Any]:
     }
     if found.edge_stress is not None:
         entry["edge_stress"] = system.out(found.edge_stress, "pressure")
-    entry["routes"] = [{"model": route.name} | _route(route, system) for route in found.routes]
+    entry["routes"] = [_route(route, system) for route in found.routes]
     if found.notes:
         entry["notes"] = list(found.notes)
     if found.reason:
@@ -86,9 +88,17 @@ def _partial(found: PressedSlip, system: System) -> dict[str, Any]:
     return entry
 
 
-def _route(route: Route, system: System) -> dict[str, float]:
-    values = {name: getattr(route, name) for name in KINDS}
-    return {name: system.out(value, KINDS[name]) for name, value in values.items() if value is not None}
+def _route(route: Route, system: System) -> dict[str, Any]:
+    entry: dict[str, Any] = {"model": route.name} | values(route, system)
+    if route.band:
+        entry["band"] = {name: values(one, system) for name, one in zip(BAND, route.band, strict=True)}
+    return entry
+
+
+def values(route: Route, system: System) -> dict[str, float]:
+    """What a route tells, in the reader's units, by its key in the JSON."""
+    found = {name: getattr(route, name) for name in KINDS}
+    return {name: system.out(value, KINDS[name]) for name, value in found.items() if value is not None}
 
 
 def pressed_text(assessment: PressedAssessment, units: System | None = None) -> str:
@@ -96,56 +106,103 @@ def pressed_text(assessment: PressedAssessment, units: System | None = None) -> 
     return "\n".join(_lines(assessment, units or assessment.joint.system)) + "\n"
 
 
-def _lines(assessment: PressedAssessment, system: System) -> Iterator[str]:
+def verdict_lines(assessment: PressedAssessment) -> Iterator[str]:
+    """What governs, against what, where; at which friction."""
     contact, verdict = assessment.joint, assessment.verdict
     g = verdict.governing
-    said = check_name(g.check)
-    if g.required is not None:
-        said = (
-            f"the contact slips wholly at {factor(g.load_factor, g.required)} times the load, required {g.required:g}"
-        )
-    elif g.reason:
-        said += f": {g.reason}"
     yield from wrapped(
-        f"{WORDS.get(verdict.exit_code, 'NOT SOLVED')}: {said} ({plain(g.case, 30)}, {g.end} end)", WIDTH
+        f"{WORDS.get(verdict.exit_code, 'NOT SOLVED')}: {sentence(assessment)} ({plain(g.case, 30)}, {g.end} end)",
+        WIDTH,
     )
     yield from wrapped(f"at lowest friction {contact.interface.friction_low:g}", WIDTH, first="  ")
+
+
+def sentence(assessment: PressedAssessment) -> str:
+    """The governing check and what it is held against."""
+    g = assessment.verdict.governing
+    if g.required is not None and g.load_factor is not None and math.isfinite(g.load_factor):
+        return (
+            f"the contact slips wholly at {factor(g.load_factor, g.required)} times the load, required {g.required:g}"
+        )
+    return f"{check_name(g.check)}: {g.reason}" if g.reason else check_name(g.check)
+
+
+def alike(assessment: PressedAssessment) -> list[tuple[int, str, PressedSlip]]:
+    """Case, words for the end, and what was found: one entry for both ends of a case where they are the same."""
+    entries: list[tuple[int, str, PressedSlip]] = []
+    for (i, end), found in assessment.slips.items():
+        last = entries[-1] if entries else None
+        if last and last[0] == i and (found.shear, found.routes) == (last[2].shear, last[2].routes):
+            entries[-1] = (i, "both ends", last[2])
+        else:
+            entries.append((i, f"{end} end", found))
+    return entries
+
+
+def _lines(assessment: PressedAssessment, system: System) -> Iterator[str]:
+    contact = assessment.joint
+    yield from verdict_lines(assessment)
     title = plain(contact.title or contact.file, WIDTH - 8)
     yield f"-- {title} ".ljust(WIDTH, "-")
-    length, force = system.length, system.force
-    for (i, end), found in assessment.slips.items():
-        size = f"{short(system.out(found.size, 'length'))} {length}"
-        pressure = f"{short(system.out(found.peak_pressure, 'pressure'))} {system.pressure}"
-        load = (
-            f"{short(system.out(found.shear, 'force'))} of {short(system.out(found.gross_slip_load, 'force'))} {force}"
-        )
-        yield from wrapped(
-            f"{plain(contact.cases[i].name, 24)}, {end} end: shear {load}; half size {size}, peak {pressure}", WIDTH
-        )
-        if found.reason:
-            yield from wrapped(found.reason, WIDTH, first="  ")
-        for route in found.routes:
-            yield from wrapped(f"{route.name}: {_said(route, system)}", WIDTH, first="  ", later="    ")
-        if found.edge_stress is not None:
-            yield f"  stress at the trailing edge {short(system.out(found.edge_stress, 'pressure'))} {system.pressure}"
-    for note in dict.fromkeys(note for found in assessment.slips.values() for note in found.notes):
+    entries = sorted(alike(assessment), key=lambda entry: entry[2].safety)[:MOST]
+    hidden = len(alike(assessment)) - len(entries)
+    for i, end, found in alike(assessment) if not hidden else entries:
+        yield from _end_lines(assessment, contact.cases[i].name, end, found, system)
+    if hidden:
+        yield f"and {hidden} more ends with larger factors; --json has them all"
+    for note in once(note for found in assessment.slips.values() for note in found.notes):
         yield from wrapped(f"Note: {note}", WIDTH)
-    if contact.assumptions:
-        yield from wrapped(
-            f"Assumed ({len(contact.assumptions)}): " + "; ".join(plain(n.text, 160) for n in contact.assumptions),
-            WIDTH,
-        )
-    yield from wrapped(f"Caution: {CAUTION}", WIDTH)
+    for said, notes in (("Assumed", assessment.assumptions), ("Warnings", assessment.warnings)):
+        if notes:
+            yield from wrapped(f"{said} ({len(notes)}): " + "; ".join(plain(n.text, 160) for n in notes), WIDTH)
+    yield from wrapped(f"Not assessed: {NOT_ASSESSED}. Caution: {CAUTION}", WIDTH)
+
+
+def _end_lines(assessment: PressedAssessment, case: str, end: str, found: PressedSlip, system: System) -> Iterator[str]:
+    """One end: load, size and pressure, then the routes, or why there are none."""
+    length, force = system.length, system.force
+    size = f"{short(system.out(found.size, 'length'))} {length}"
+    pressure = f"{pressure_word(assessment)} {short(system.out(found.peak_pressure, 'pressure'))} {system.pressure}"
+    load = f"{short(system.out(found.shear, 'force'))} of {short(system.out(found.gross_slip_load, 'force'))} {force}"
+    yield from wrapped(f"{plain(case, 24)}, {end}: shear {load}; half size {size}, {pressure}", WIDTH)
+    if found.reason:
+        yield from wrapped(found.reason, WIDTH, first="  ")
+    for route in found.routes:
+        lines = wrapped(f"{route.name}: {_said(route, system)}", WIDTH, first="  ", later="    ")
+        yield from (line.replace(GLUE, " ") for line in lines)
+
+
+def pressure_word(assessment: PressedAssessment) -> str:
+    """What the pressure of the result is: the peak, or of a sharp flat the mean."""
+    return "mean pressure" if assessment.joint.shape == "flat" else "peak"
 
 
 def _said(route: Route, system: System) -> str:
-    values = _route(route, system)
-    words = {
+    names = {
         "displacement": "motion",
         "stick_ratio": "stick size",
+        "stick_shift": "stick zone shifted by",
         "true_slip": "true slip",
         "elastic_slip": "elastic slip",
+        "edge_stress": "stress at the trailing edge",
+        "energy_per_cycle": "a cycle",
     }
-    units = {name: "" if KINDS[name] == "number" else " " + system.unit(KINDS[name]) for name in KINDS}
-    names = {"energy_per_cycle": "a cycle"} | words
-    return ", ".join(f"{names.get(name, name)} {short(value)}{units[name]}" for name, value in values.items())
+    said = []
+    for name, value in values(route, system).items():
+        unit = "" if KINDS[name] == "number" else " " + system.unit(KINDS[name])
+        parts = (names.get(name, name), _glued(f"{short(value)}{unit}"), _glued(band_said(route, name, system)))
+        said.append(" ".join(part for part in parts if part))
+    return ", ".join(said)
+
+
+def _glued(text: str) -> str:
+    """A number with its unit, or a range, that no line breaks."""
+    return text.replace(" ", GLUE)
+
+
+def band_said(route: Route, name: str, system: System) -> str:
+    """The values at low and high stiffness of the face, the smaller first; '' where there are none or they are the same."""
+    ends: Sequence[float] = sorted(values(one, system).get(name, math.nan) for one in route.band)
+    if not ends or math.isnan(sum(ends)) or ends[0] == ends[-1]:
+        return ""
+    return f"({short(ends[0])} .. {short(ends[-1])})"

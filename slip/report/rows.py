@@ -68,15 +68,15 @@ def case_table(assessment: Assessment) -> Table:
     rows = {place: _case_row(checks, kinds[place[0]], place == (g.case, g.end)) for place, checks in groups.items()}
     if len(rows) <= SHOWN:
         return Table("Factors of every case and end", (), list(rows.values()))
-    worst = dict.fromkeys(sorted(groups, key=lambda place: _urgency(groups[place]))[:SHOWN])
+    worst = dict.fromkeys(sorted(groups, key=lambda place: urgency(groups[place]))[:SHOWN])
     caption = f"The {SHOWN} of {len(rows)} cases and ends with the least reserve"
     return Table(
         caption, (), [rows[place] for place in worst], [row for place, row in rows.items() if place not in worst]
     )
 
 
-def _urgency(checks: Sequence[Check]) -> tuple[int, float]:
-    """Failed first, then not solved, then by the least reserve of what decides."""
+def urgency(checks: Sequence[Check]) -> tuple[int, float]:
+    """Order of the checks of one place: failed first, then not solved, then by the least reserve of what decides."""
     reserves = [c.reserve_factor for c in checks if c.decides and c.reserve_factor is not None]
     return STATES.index(state(checks)), min(reserves, default=math.inf)
 
@@ -169,7 +169,7 @@ def standard_table(assessment: Assessment, entries: Sequence[Entry], system: Sys
         "verdict",
         "not met",
     )
-    first = set(sorted(range(len(rows)), key=lambda i: _urgency([entries[i].check]))[:SHOWN])
+    first = set(sorted(range(len(rows)), key=lambda i: urgency([entries[i].check]))[:SHOWN])
     shown, rest = [r for i, r in enumerate(rows) if i in first], [r for i, r in enumerate(rows) if i not in first]
     label = entries[0].standard.label
     return Table(f"{label}, worst bolt of every case and end", heads, shown, rest, range(3, 7), 7)

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 
-from slip.friction.pressed import NO_SHEAR, PressedSlip
+from slip.friction.pressed.records import NO_SHEAR, PressedSlip
 from slip.joint.contact import PressedContact
 from slip.verdict.checks import Check
 from slip.verdict.stage import Verdict, against, conclude
@@ -16,7 +16,7 @@ def pressed_verdict(contact: PressedContact, slips: Mapping[tuple[int, str], Pre
     for (i, end), found in slips.items():
         case = contact.cases[i]
         least = contact.required.alternating if case.alternating else contact.required.static
-        factor = found.gross_slip_load / found.shear if found.shear > 0 else float("inf")
+        factor = found.safety
         reason = "no shear" if found.reason == NO_SHEAR else ""
         checks.append(
             Check(
@@ -39,10 +39,11 @@ def pressed_verdict(contact: PressedContact, slips: Mapping[tuple[int, str], Pre
 
 
 def _true_slip(contact: PressedContact, most: float, case: str, end: str, found: PressedSlip) -> Check:
-    """The largest true slip of the routes that tell it."""
+    """The largest true slip of the routes that tell it, at any reading of the face's stiffness."""
     if found.reason and found.reason != NO_SHEAR:
         return Check("true_slip", case, end, "", None, None, None, 0.0, False, True, found.reason)
-    slip = max((route.true_slip for route in found.routes if route.true_slip is not None), default=0.0)
+    readings = [reading for route in found.routes for reading in (route, *route.band)]
+    slip = max((reading.true_slip for reading in readings if reading.true_slip is not None), default=0.0)
     reserve = most / slip if slip > 0 else float("inf")
     said = against(slip, most)
     return Check("true_slip", case, end, "", None, None, None, reserve, bool(slip <= most), True, said)
