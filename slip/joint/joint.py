@@ -12,6 +12,7 @@ from slip.joint.loads import Case
 from slip.joint.pattern import Pattern
 from slip.joint.plates import Plate
 from slip.joint.surface import Interface
+from slip.joint.table import TableForm
 from slip.joint.tightening import Losses, Preload, Torque
 
 
@@ -68,6 +69,7 @@ class Joint:
     required: Required
     standards: tuple[Standard, ...]
     cases: tuple[Case, ...]
+    table: TableForm
     loosening_limit: bool
     assumptions: tuple[Note, ...]
     warnings: tuple[Note, ...]

@@ -21,10 +21,10 @@ COMPONENTS = ("shear", "axial", "moment")
 Ends = tuple[tuple[str, Load], ...]
 
 
-def cases(r: Reader, pattern: Pattern | None) -> tuple[Case, ...]:
-    """All [[case]], at least one, of different names."""
+def cases(r: Reader, pattern: Pattern | None, in_table: bool = False) -> tuple[Case, ...]:
+    """All [[case]] of different names; at least one, unless the cases stand in a table."""
     sections = many(r, "case[]")
-    if not sections:
+    if not sections and not in_table:
         write = 'add [[case]] with shear = ["0 kN", "24 kN"]'
         raise r.stop(("case",), "missing-key", "no [[case]]", "at least one load case", write)
     built = r.every(partial(_case, r, s, i, pattern) for i, s in enumerate(sections))
@@ -136,9 +136,14 @@ def _ends(r: Reader, s: Section, name: str, given: Load, unsigned: bool) -> tupl
 
 
 def axial(
-    r: Reader, s: Section, plates: tuple[Plate, ...] | None, bolt: Bolt | None, cases: tuple[Case, ...] | None
+    r: Reader,
+    s: Section,
+    plates: tuple[Plate, ...] | None,
+    bolt: Bolt | None,
+    cases: tuple[Case, ...] | None,
+    in_table: bool = False,
 ) -> Axial:
-    """[axial]; what the share of the bolt is taken as when the file is silent is said."""
+    """[axial]; what the share of the bolt is taken as when the file is silent is said. A table of cases may have axial forces."""
     meaning, share, introduction = _meaning(s, cases), ranged(s, "bolt_share"), s.get("load_introduction")
     if share is not None and introduction is not None:
         found = "bolt_share and load_introduction"
@@ -147,10 +152,11 @@ def axial(
         raise Stop
     if introduction is not None:
         need_springs(r, plates, bolt, "load_introduction", "give bolt_share")
-    if any(_has_axial(case) for case in cases) and share is None and introduction is None:
+    pulls = in_table or any(_has_axial(case) for case in cases)
+    if pulls and share is None and introduction is None:
         text = "bolt share 0 for the clamp, the full spring ratio for the bolt force"
         r.assume("bolt-share", text, "axial.bolt_share")
-    if any(_has_axial(case) for case in cases):
+    if pulls:
         r.assume("prying", "prying is not computed: axial forces must include it", "case.axial")
     model = s.get("model_preload"), s.get("model_bolt_share")
     return Axial(meaning, *model, share, introduction, s.get("credit_compression", False))

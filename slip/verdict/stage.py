@@ -47,8 +47,8 @@ def verdict(joint: Joint, clamp: Clamp, pressure: Pressure, slip: Slip, partial:
             standards[i, end] = entries
             checks += [*judged.checks, *(entry.check for entry in entries)]
             if joint.required.true_slip is not None:
-                checks.append(_true_slip(joint, partial, joint.required.true_slip, i, end))
-    return conclude([*checks, *_not_solved(joint)], tuple(ends), standards)
+                checks.append(true_slip(joint, partial, joint.required.true_slip, i, end))
+    return conclude([*checks, *not_solved(joint)], tuple(ends), standards)
 
 
 def conclude(
@@ -71,7 +71,7 @@ def _governing(checks: Sequence[Check]) -> Check:
     return candidates[first_least(reserves)]
 
 
-def _true_slip(joint: Joint, partial: Partial, most: float, case: int, end: str) -> Check:
+def true_slip(joint: Joint, partial: Partial, most: float, case: int, end: str) -> Check:
     """The largest true slip of the three readings of the face's stiffness against the file's own limit [mm]."""
     name, found = joint.cases[case].name, partial.of(case, end)
     reason = partial.reason if found is None else "" if found.reason == NO_SHEAR else found.reason
@@ -92,7 +92,7 @@ def against(slip: float, most: float) -> str:
     return f"{1e3 * slip:.3g} um against {1e3 * most:.3g} um"
 
 
-def _not_solved(joint: Joint) -> list[Check]:
+def not_solved(joint: Joint) -> list[Check]:
     """Limits that the file sets and no answer can judge yet: they decide, and nobody may take them for held."""
     reasons = {
         "loosening": "the limit of loosening is not judged yet" if joint.loosening_limit else "",

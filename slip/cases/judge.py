@@ -1,0 +1,343 @@
+"""Many cases judged at once: the stages of a joint on arrays, and what its verdict would say of each case."""
+
+from __future__ import annotations
+
+from dataclasses import replace
+
+import numpy as np
+
+from slip.base.errors import NotConverged
+from slip.base.records import record
+from slip.base.trace import Trace
+from slip.cases.acting import acting, part
+from slip.cases.rows import Block
+from slip.clamp.assembly import Assembly, assemble
+from slip.clamp.stage import Clamp, Highest, highest, ledger, refuse_impossible
+from slip.clamp.states import not_carried, shared
+from slip.friction.partial import Partial
+from slip.friction.stage import Slip, slip
+from slip.joint.joint import Joint
+from slip.joint.loads import Case, Load
+from slip.pressure.stage import Pressure, pressure
+from slip.verdict.by_standard import judge_standard
+from slip.verdict.checks import TIE, Check
+from slip.verdict.gross_slip import deciding
+from slip.verdict.stage import FAILS, HOLDS, NOT_SOLVED, not_solved, true_slip
+
+Array = np.ndarray
+ENDS = ("given", "other")
+NOT_PROVEN = "the group factor could not be proven"
+TILTED = "a tilting moment that the pattern cannot carry"
+
+
+@record(eq=False)
+class Judged:
+    """What C cases over n bolts came to, each value at its governing end.
+
+    bolt_* (C, n), group_* and force_* (C,): end (0 given, 1 other), safety, load_factor, reserve; clamp_low, clamp_high, shear,
+    separation, open (C, n). required (C,). code (C,): holds, fails or not solved, as the exit codes; check, end, bolt, factor,
+    reserve (C,): what governs each case. reason (C,): why it could not be judged, ''. highest: of all.
+    """
+
+    bolt_end: Array
+    bolt_safety: Array
+    bolt_load_factor: Array
+    bolt_reserve: Array
+    clamp_low: Array
+    clamp_high: Array
+    shear: Array
+    separation: Array
+    open: Array
+    group_end: Array
+    group_safety: Array
+    group_load_factor: Array
+    group_reserve: Array
+    force_end: Array
+    force_safety: Array
+    force_load_factor: Array
+    force_reserve: Array
+    required: Array
+    code: Array
+    check: Array
+    end: Array
+    bolt: Array
+    factor: Array
+    reserve: Array
+    reason: Array
+    highest: Highest
+
+
+@record(eq=False)
+class Prepared:
+    """What all chunks of a table have in common: the joint, its bolts before load, the pressure on its face without and with torque."""
+
+    joint: Joint
+    assembly: Assembly
+    still: Pressure
+    turning: Pressure
+
+
+def prepare(joint: Joint) -> Prepared:
+    """The joint as far as it can be worked out before any load. Raises Problems for a preload that no bolt can carry."""
+    assembly = assemble(joint)
+    refuse_impossible(joint, assembly)
+    single = joint.pattern.count == 1
+    still = pressure(joint, turning=False)
+    return Prepared(joint, assembly, still, pressure(joint, turning=True) if single else still)
+
+
+def judge(ready: Prepared, block: Block, bolts: bool) -> Judged:
+    """The verdict on every case of a block, as one joint file with that case would have it.
+
+    A case that cannot be solved does not take the others with it: its `reason` says why.
+    """
+    parts = _parts(ready.joint, block, bolts)
+    solved = [(cases, _solved(ready, turning, part(block, cases), bolts)) for cases, turning in parts]
+    return solved[0][1] if len(solved) == 1 else _joined(solved)
+
+
+def _parts(joint: Joint, block: Block, bolts: bool) -> list[tuple[Array, bool]]:
+    """Cases that the stages take together: with one bolt those under torque apart from the others."""
+    every = np.arange(block.count)
+    if joint.pattern.count > 1:
+        return [(every, False)]
+    what = acting(joint, block, bolts)
+    turned = np.zeros(block.count, dtype=bool)
+    turned[what.case[what.couple[2, :, 0] != 0]] = True
+    return [(cases, turning) for cases, turning in ((every[~turned], False), (every[turned], True)) if cases.size] or [
+        (every, False)
+    ]
+
+
+def _solved(ready: Prepared, turning: bool, block: Block, bolts: bool) -> Judged:
+    """As `judge`; where the answer of the whole cannot be proven, of its halves."""
+    try:
+        return _judged(ready, turning, block, bolts)
+    except NotConverged:
+        if block.count == 1:
+            block.open_reason[0] = NOT_PROVEN
+            zero = {name: np.zeros_like(values) for name, values in block.given.items()}
+            none = {name: values[:0] for name, values in block.other.items()}
+            return _judged(ready, False, replace(block, given=zero, other=none, second=block.second[:0]), bolts)
+        halves = np.array_split(np.arange(block.count), 2)
+        return _joined([(half, _solved(ready, turning, part(block, half), bolts)) for half in halves])
+
+
+def _joined(parts: list[tuple[Array, Judged]]) -> Judged:
+    """One record of several, its cases at the places that come with each."""
+    order = np.argsort(np.concatenate([cases for cases, _ in parts]), kind="stable")
+    values = {
+        name: np.concatenate([getattr(judged, name) for _, judged in parts])[order]
+        for name in Judged.__dataclass_fields__
+        if name != "highest"
+    }
+    return Judged(**values, highest=largest([judged.highest for _, judged in parts]))
+
+
+def largest(many: list[Highest]) -> Highest:
+    """The largest of several highest values."""
+
+    def most(values: list[float | None]) -> float | None:
+        return max((v for v in values if v is not None), default=None)
+
+    return Highest(most([h.yield_use for h in many]), most([h.bearing_pressure for h in many]))
+
+
+def _judged(ready: Prepared, turning: bool, block: Block, bolts: bool) -> Judged:
+    joint, pressed = ready.joint, ready.turning if turning else ready.still
+    what = acting(joint, block, bolts)
+    tilted = np.unique(what.case[not_carried(joint, what)])
+    block.open_reason[tilted] = TILTED
+    states = shared(joint, what, Trace(keep=False))
+    found = ledger(joint, ready.assembly, states, [], keep=False)
+    slipping = slip(joint, states, found, pressed, keep=False)
+    return _Verdict(joint, Clamp(ready.assembly, states, found, (), ()), slipping, pressed, block).judged()
+
+
+class _Verdict:
+    """The verdict of a joint on arrays: ends first, (2, C, ...); what a case has no other end for is infinite there."""
+
+    def __init__(self, joint: Joint, clamp: Clamp, slipping: Slip, pressure: Pressure, block: Block) -> None:
+        self.joint, self.clamp, self.slip, self.pressure, self.block = joint, clamp, slipping, pressure, block
+        self.C = block.count
+        self.at = np.stack([np.arange(self.C), -np.ones(self.C, dtype=int)])
+        self.at[1, clamp.states.case[self.C :]] = np.arange(self.C, len(clamp.states.case))
+        required = joint.required
+        self.least = np.where(block.alternating, required.alternating, required.static)
+
+    def ends(self, values: Array, absent: float | bool = np.inf) -> Array:
+        """Values (S, ...) of the states by end and case, (2, C, ...)."""
+        found = values[self.at]
+        found[1, self.at[1] < 0] = absent
+        return found
+
+    def judged(self) -> Judged:
+        """Everything that is told of the cases."""
+        ledger, slipping = self.clamp.ledger, self.slip
+        sliding = slipping.sliding
+        bolt = [np.where(sliding[:, None], v, np.inf) for v in (slipping.bolt_safety, slipping.bolt_load_factor)]
+        group = [np.where(sliding, v, np.inf) for v in (slipping.group.factor, slipping.group_load_factor)]
+        force = [np.where(sliding, v, np.inf) for v in (slipping.force_safety, slipping.force_load_factor)]
+        apart = np.where(ledger.open & ~(ledger.relief > 0), 0.0, ledger.separation_factor)
+        of_bolts, of_group, of_force = (self._by_end(*pair) for pair in (bolt, group, force))
+        decided = self._decided(of_bolts, of_group, self.ends(apart))
+        picked = of_bolts["end"]
+        values = {
+            name: _pick(self.ends(v), picked)
+            for name, v in (
+                ("clamp_low", ledger.clamp_low),
+                ("clamp_high", ledger.clamp_high),
+                ("shear", slipping.shear),
+                ("separation", apart),
+                ("open", ledger.open),
+            )
+        }
+        named = {
+            f"{what}_{name}": found[name]
+            for what, found in (("bolt", of_bolts), ("group", of_group), ("force", of_force))
+            for name in ("end", "safety", "load_factor", "reserve")
+        }
+        return Judged(
+            **values, **named, **decided, required=self.least, reason=self.block.open_reason, highest=self._highest()
+        )
+
+    def _highest(self) -> Highest:
+        return highest(self.clamp.ledger) if self.C else Highest(None, None)
+
+    def _by_end(self, safety: Array, growing: Array) -> dict[str, Array]:
+        """Both factors, and the reserve of the one that counts, at the end where that is smaller; the given end of equal ones."""
+        factor = self.ends(deciding(self.joint, safety, growing))
+        least = self.least.reshape((self.C,) + (1,) * (factor.ndim - 2))
+        reserve = factor / least
+        end = np.where(_tied_first(reserve[0], reserve[1]), 0, 1)
+        both = {"safety": self.ends(safety), "load_factor": self.ends(growing), "reserve": reserve}
+        return {name: _pick(values, end) for name, values in both.items()} | {
+            "end": end,
+            "reserves": reserve,
+            "factors": factor,
+        }
+
+    def _decided(self, of_bolts: dict[str, Array], of_group: dict[str, Array], apart: Array) -> dict[str, Array]:
+        """Code, and what governs, of every case: checks in the order of a joint's verdict."""
+        candidates: list[tuple[str, int, Array, Array, Array, Array]] = []  # check, end, bolt, factor, reserve, solved
+        every, none = np.ones(self.C, dtype=bool), np.full(self.C, -1)
+        extra = self._extras()
+        for end in (0, 1):
+            if self.joint.required.decides == "per bolt":
+                reserves = of_bolts["reserves"][end]
+                bolt = _first_least(reserves)
+                reserve = np.take_along_axis(reserves, bolt[:, None], 1)[:, 0]
+                factor = np.take_along_axis(of_bolts["factors"][end], bolt[:, None], 1)[:, 0]
+                candidates.append(("gross_slip.per_bolt", end, bolt, factor, reserve, every))
+            else:
+                reserve = of_group["reserves"][end]
+                candidates.append(("gross_slip.group", end, none, of_group["factors"][end], reserve, every))
+            bolt = _first_least(apart[end])
+            factor = np.take_along_axis(apart[end], bolt[:, None], 1)[:, 0]
+            candidates.append(("separation", end, bolt, factor, factor / self.least, every))
+            candidates += extra[end]
+        candidates += [
+            (c.check, 0, none, np.full(self.C, np.nan), np.full(self.C, np.nan), ~every) for c in not_solved(self.joint)
+        ]
+        reserves = np.stack([reserve for _, _, _, _, reserve, _ in candidates])
+        solved = np.stack([s for _, _, _, _, _, s in candidates]) & ~np.isnan(reserves)
+        failed = solved & ~(reserves >= 1)
+        for k, (name, *_) in enumerate(candidates):
+            if name.startswith("standard."):
+                failed[k] |= solved[k] & self.unmet[name, candidates[k][1]]
+        code = np.where(failed.any(0), FAILS, np.where(solved.all(0), HOLDS, NOT_SOLVED))
+        code = np.where(self.block.open_reason != "", NOT_SOLVED, code)
+        ranked = np.where(failed.any(0), np.where(failed, reserves, np.inf), np.where(solved, reserves, np.inf))
+        governs = _first_least(ranked.T)
+        one = np.arange(self.C)
+        return {
+            "code": code,
+            "check": np.array([c[0] for c in candidates])[governs],
+            "end": np.array([c[1] for c in candidates])[governs],
+            "bolt": np.stack([c[2] for c in candidates])[governs, one],
+            "factor": np.stack([c[3] for c in candidates])[governs, one],
+            "reserve": reserves[governs, one],
+        }
+
+    def _extras(self) -> list[list[tuple[str, int, Array, Array, Array, Array]]]:
+        """Listed standards and the limit of true slip, case by case as a joint file has them judged."""
+        self.unmet: dict[tuple[str, int], Array] = {}
+        joint, most = self.joint, self.joint.required.true_slip
+        if not self.C or (not joint.standards and most is None):
+            return [[], []]
+        names = self.block.names.to_list()
+        both = ("given", Load((0, 0), 0, (0, 0, 0))), ("other", Load((0, 0), 0, (0, 0, 0)))
+        cases = tuple(
+            Case(
+                name,
+                True,
+                both if self.at[1, i] >= 0 else both[:1],
+                None,
+                None,
+                bool(self.block.alternating[i]),
+                False,
+                None,
+                None,
+            )
+            for i, name in enumerate(names)
+        )
+        joint = replace(joint, cases=cases)
+        partial = Partial(joint, self.clamp, self.pressure, self.slip) if most is not None else None
+        found: list[list[tuple[str, int, Array, Array, Array, Array]]] = []
+        for end in (0, 1):
+            listed: list[list[Check]] = []
+            for i in range(self.C):
+                row = self.at[end, i]
+                if row < 0:
+                    listed.append([])
+                    continue
+                rows = np.array([row])
+                checks = [
+                    judge_standard(joint, self.clamp, self.slip, self.pressure, s, i, ENDS[end], rows).check
+                    for s in joint.standards
+                ]
+                if partial is not None and most is not None:
+                    checks.append(true_slip(joint, partial, most, i, ENDS[end]))
+                listed.append(checks)
+            found.append(self._as_candidates(listed, end))
+        return found
+
+    def _as_candidates(self, listed: list[list[Check]], end: int) -> list[tuple[str, int, Array, Array, Array, Array]]:
+        """Checks of each case as columns; where a case has no such end nothing limits."""
+        known = {name: i for i, name in enumerate(self.joint.pattern.names)}
+        made = []
+        for k, name in enumerate(next((dict.fromkeys(c.check for c in checks) for checks in listed if checks), {})):
+            one = [checks[k] if checks else None for checks in listed]
+            reserve = np.array(
+                [np.inf if c is None else np.nan if c.reserve_factor is None else c.reserve_factor for c in one]
+            )
+            bolt = np.array([-1 if c is None else known.get(c.bolt, -1) for c in one])
+            solved = np.array([c is None or c.solved for c in one])
+            self.unmet[name, end] = np.array([c is not None and c.solved and not c.holds for c in one])
+            made.append((name, end, bolt, np.full(self.C, np.nan), reserve, solved))
+        return made
+
+
+def _tied_first(first: Array, second: Array) -> Array:
+    """Whether the first of two counts as the smaller: smaller, equal within 1e-9, or not a number."""
+    least = np.fmin(first, second)
+    with np.errstate(invalid="ignore"):
+        return np.where(
+            np.isnan(first), True, np.where(np.isnan(second), False, ~(first > least + TIE * np.abs(least)))
+        )
+
+
+def _first_least(values: Array) -> Array:
+    """As checks.first_least for each row of (C, k)."""
+    if not values.size:
+        return np.zeros(len(values), dtype=int)
+    values = np.where(np.isnan(values), -np.inf, values)
+    least = values.min(axis=1, keepdims=True)
+    with np.errstate(invalid="ignore"):
+        tied = np.where(np.isfinite(least), values <= least + TIE * np.abs(least), values == least)
+    return np.argmax(tied, axis=1)
+
+
+def _pick(values: Array, end: Array) -> Array:
+    """Of values (2, C, ...) the one at the end of each."""
+    return np.where(end == 0, values[0], values[1])

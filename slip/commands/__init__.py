@@ -1,0 +1,1 @@
+"""What each command does: options in, text and exit code out. Nothing here prints."""
