@@ -9,9 +9,10 @@ from typing import TYPE_CHECKING, Literal
 from slip.base.notes import Note
 from slip.base.records import record
 from slip.clamp.stage import Clamp, clamp
+from slip.clamp.states import States
 from slip.friction.partial import Partial
 from slip.friction.stage import Slip, slip
-from slip.joint.contact import PressedContact
+from slip.joint.contact import PressedContact, PressedFace
 from slip.joint.joint import Joint
 from slip.pressure.stage import Pressure, pressure
 from slip.read.build import read
@@ -47,7 +48,8 @@ class Assessment:
 
 
 if TYPE_CHECKING:
-    from slip.friction.pressed import PressedSlip
+    from slip.friction.known_pressure import FaceSlip
+    from slip.friction.pressed.records import PressedSlip
 
 
 @record(eq=False)
@@ -64,28 +66,71 @@ class PressedAssessment:
         """Whether every check that decides holds."""
         return self.verdict.holds
 
+    @property
+    def assumptions(self) -> tuple[Note, ...]:
+        """Every default that was used."""
+        return self.joint.assumptions
 
-def assess(joint: Joint | PressedContact | str | Path) -> Assessment | PressedAssessment:
-    """The assessment of a joint or a pressed contact, or of the joint file at a path.
+    @property
+    def warnings(self) -> tuple[Note, ...]:
+        """What a reader must know."""
+        return self.joint.warnings
+
+
+@record(eq=False)
+class FaceAssessment:
+    """What was found for a face of known pressure: gross and partial slip by case and end, the verdict."""
+
+    joint: PressedFace
+    slips: Mapping[tuple[int, str], FaceSlip]
+    verdict: Verdict
+    pressed: Literal["face"] = "face"
+
+    @property
+    def holds(self) -> bool:
+        """Whether every check that decides holds."""
+        return self.verdict.holds
+
+
+Subject = Joint | PressedContact | PressedFace
+
+
+def assess(joint: Subject | str | Path) -> Assessment | PressedAssessment | FaceAssessment:
+    """The assessment of a joint, a pressed contact or a face of known pressure, or of the joint file at a path.
 
     Raises slip.base.errors.Problems for a wrong file, NotConverged where a numerical answer could not be proven.
     """
     if isinstance(joint, (str, Path)):
         joint = read(joint)
+    if isinstance(joint, PressedFace):
+        return _face(joint)
     return _pressed(joint) if isinstance(joint, PressedContact) else _bolted(joint)
 
 
 def _pressed(contact: PressedContact) -> PressedAssessment:
-    from slip.friction.pressed import pressed_slip  # brings SciPy's transforms; only a contact pays for them
+    from slip.friction.pressed.stage import pressed_slips  # brings SciPy's transforms; only a contact pays for them
     from slip.verdict.pressed import pressed_verdict  # likewise
 
-    slips = {(i, end): pressed_slip(contact, case, end) for i, case in enumerate(contact.cases) for end, _ in case.ends}
+    slips = pressed_slips(contact)
     return PressedAssessment(contact, slips, pressed_verdict(contact, slips))
 
 
+def _face(face: PressedFace) -> FaceAssessment:
+    from slip.friction.known_pressure import face_slips  # only a face of known pressure pays for its way
+    from slip.verdict.pressed_face import face_verdict  # likewise
+
+    slips = face_slips(face)
+    return FaceAssessment(face, slips, face_verdict(face, slips))
+
+
 def _bolted(joint: Joint) -> Assessment:
-    held = clamp(joint)
+    return assess_states(joint)
+
+
+def assess_states(joint: Joint, loaded: States | None = None) -> Assessment:
+    """The assessment of a joint under its own cases, or under states that a table gives in their place."""
+    held = clamp(joint, loaded)
     pressed = pressure(joint, turning=bool((held.states.load[:, 2] != 0).any()))
-    slipping = slip(joint, held, pressed)
+    slipping = slip(joint, held.states, held.ledger, pressed)
     partial = Partial(joint, held, pressed, slipping)
     return Assessment(joint, held, pressed, slipping, partial, verdict(joint, held, pressed, slipping, partial))

@@ -7,6 +7,7 @@ import contextlib
 import gc
 import os
 import sys
+import time
 from collections.abc import Callable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, NamedTuple
@@ -16,7 +17,7 @@ from slip.base.errors import InputError, NotConverged, Problems, SlipError
 from slip.base.units import SYSTEMS, System
 
 if TYPE_CHECKING:
-    from slip.assess import Assessment, PressedAssessment
+    from slip.assess import Assessment, FaceAssessment, PressedAssessment
 
 INPUT_WRONG, NOT_SOLVED, FAULT, INTERRUPTED = 2, 3, 4, 130
 
@@ -41,8 +42,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
     except SlipError as error:
         print(f"slip: {error}", file=sys.stderr)
         return FAULT
-    except KeyboardInterrupt:
-        print("slip: interrupted; nothing was written", file=sys.stderr)
+    except KeyboardInterrupt as interrupt:
+        print(f"slip: interrupted; {interrupt or 'nothing was written'}", file=sys.stderr)
         return INTERRUPTED
     except Exception as error:  # a fault of ours must not look like one of the input
         said = f"a fault of the program, not of your input: {type(error).__name__}: {error} ({_place(error)})"
@@ -86,7 +87,7 @@ def _place(error: BaseException) -> str:
 # the commands
 
 
-def _assess(path: str) -> Assessment | PressedAssessment:
+def _assess(path: str) -> Assessment | PressedAssessment | FaceAssessment:
     """The assessment of a joint file. Nothing is garbage while the modules load; looking for it costs a twentieth of the start.
 
     All matrices here are small: threads of the linear algebra library only cost time to start, a fifth of a check.
@@ -105,6 +106,8 @@ def _assess(path: str) -> Assessment | PressedAssessment:
 
 def _check(options: argparse.Namespace) -> Outcome:
     assessment = _assess(options.file)
+    if assessment.pressed == "face":
+        return _check_face(assessment, options)
     if assessment.pressed:
         return _check_pressed(assessment, options)
     if options.report:
@@ -123,7 +126,9 @@ def _check(options: argparse.Namespace) -> Outcome:
 
 def _check_pressed(assessment: PressedAssessment, options: argparse.Namespace) -> Outcome:
     if options.report:
-        raise _only_bolted("--report", options.file)
+        from slip.report.pressed_page import pressed_page
+
+        _write(Path(options.report), pressed_page(assessment, _units(options)), source=Path(options.file))
     from slip.report.pressed import pressed_json, pressed_text
 
     code = assessment.verdict.exit_code
@@ -131,15 +136,26 @@ def _check_pressed(assessment: PressedAssessment, options: argparse.Namespace) -
     return Outcome(said(assessment, _units(options)), code)
 
 
-def _only_bolted(what: str, file: str) -> Problems:
-    remedy = "slip check FILE --json has every number of a contact"
-    return Problems([InputError("contact-not-yet", what, "a pressed contact", "a joint with bolts", remedy, file)])
+def _check_face(assessment: FaceAssessment, options: argparse.Namespace) -> Outcome:
+    if options.report:
+        raise _not_of_face("--report", options.file)
+    from slip.report.face import face_json, face_text
+
+    said = face_json if options.json else face_text
+    return Outcome(said(assessment, _units(options)), assessment.verdict.exit_code)
+
+
+def _not_of_face(what: str, file: str) -> Problems:
+    remedy = "slip check FILE --json has every number of such a face"
+    return Problems([InputError("face-not-yet", what, "a face of known pressure", "a joint with bolts", remedy, file)])
 
 
 def _explain(options: argparse.Namespace) -> Outcome:
-    assessment = _assess(options.file)
+    assessment = _assess_in_table(options) if options.table else _assess(options.file)
+    if assessment.pressed == "face":
+        raise _not_of_face("explain", options.file)
     if assessment.pressed:
-        raise _only_bolted("explain", options.file)
+        return _explain_pressed(assessment, options)
     from slip.report.equations import explain
 
     explanation = explain(assessment, options.case, options.bolt)
@@ -150,6 +166,45 @@ def _explain(options: argparse.Namespace) -> Outcome:
     from slip.report.explained import explain_text
 
     return Outcome(explain_text(explanation, assessment))
+
+
+def _assess_in_table(options: argparse.Namespace) -> Assessment:
+    """One case of a table."""
+    from slip.cases.single import assess_case
+
+    return assess_case(options.file, options.table, options.case)
+
+
+def _explain_pressed(assessment: PressedAssessment, options: argparse.Namespace) -> Outcome:
+    from slip.report.machine import explanation_text
+    from slip.report.pressed_lines import explain_pressed, explain_pressed_text
+
+    explanation = explain_pressed(assessment, options.case, options.bolt)
+    return Outcome(explanation_text(explanation) if options.json else explain_pressed_text(explanation, assessment))
+
+
+def _cases(options: argparse.Namespace) -> Outcome:
+    for name in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
+        os.environ.setdefault(name, "1")
+    from slip.commands.cases import cases
+
+    return cases(options, _meter())
+
+
+def _meter() -> Callable[[int, int], None] | None:
+    """A line on standard error that says how far a long run has come; only for somebody who looks at a terminal."""
+    if not sys.stderr.isatty():
+        return None
+    start, width = time.monotonic(), 30
+
+    def show(done: int, total: int) -> None:
+        share = done / total if total else 1.0
+        left = (time.monotonic() - start) * (1 - share) / share if share else 0.0
+        bar = ("=" * round(width * share)).ljust(width)
+        end = "\r\033[K" if done >= total else ""
+        print(f"\r[{bar}] {share:4.0%}, {left:.0f} s left ", end=end, file=sys.stderr, flush=True)
+
+    return show
 
 
 def _tables(options: argparse.Namespace) -> Outcome:
@@ -227,7 +282,24 @@ def _explain_options(parser: argparse.ArgumentParser) -> None:
     parser.add_argument("file", metavar="FILE")
     parser.add_argument("case", metavar="CASE", nargs="?", help="default: the governing case")
     parser.add_argument("bolt", metavar="BOLT", nargs="?", help="default: the governing bolt")
+    parser.add_argument("--table", metavar="TABLE", help="the case stands in this table of load cases")
     parser.add_argument("--json", action="store_true", help="the lines for programs, on standard output")
+
+
+def _cases_options(parser: argparse.ArgumentParser) -> None:
+    parser.add_argument("file", metavar="FILE", help="the joint file; its own load cases do not count")
+    parser.add_argument("table", metavar="TABLE", help="CSV or Parquet: forces of each bolt, or loads of the joint")
+    parser.add_argument("--out", metavar="OUT", help="write a row for each bolt and case: OUT.csv or OUT.parquet")
+    parser.add_argument("--refused", metavar="OUT.csv", help="where rows that cannot be used go")
+    parser.add_argument("--loads", metavar="TABLE", help="joint loads that the bolt forces are added up against")
+    parser.add_argument("--top", metavar="N", type=int, help="list the N cases nearest to slip")
+    parser.add_argument("--case", metavar="NAME", action="append", default=[], help="show and write this case only")
+    parser.add_argument("--bolt", metavar="NAME", action="append", default=[], help="show and write this bolt only")
+    parser.add_argument("--resume", action="store_true", help="go on with an interrupted run that wrote to OUT")
+    parser.add_argument("--workers", metavar="N", type=int, default=1, help="processes that share the work")
+    parser.add_argument("--json", action="store_true", help="the summary for programs, on standard output")
+    parser.add_argument("--report", metavar="OUT.html", help="write one self-contained page")
+    parser.add_argument("--units", choices=tuple(SYSTEMS), help="units of the result; default those of the file")
 
 
 def _tables_options(parser: argparse.ArgumentParser) -> None:
@@ -245,6 +317,7 @@ class Command(NamedTuple):
 COMMANDS = {
     "new": Command(_new, "write a commented joint file; never over an existing one", _new_options),
     "check": Command(_check, "does the joint slip?", _check_options),
+    "cases": Command(_cases, "many load cases: a table in, the envelope out", _cases_options),
     "explain": Command(_explain, "every number with formula, numbers put in, source and basis", _explain_options),
     "tables": Command(_tables, "the data with source and basis", _tables_options),
 }

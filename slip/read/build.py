@@ -7,16 +7,19 @@ from functools import partial
 from pathlib import Path
 from typing import TypeVar
 
-from slip.joint.contact import PressedContact
+from slip.joint.contact import PressedContact, PressedFace
 from slip.joint.joint import Joint, Standard
 from slip.read import assembly, hardware, loading
 from slip.read.demands import interface, required
 from slip.read.document import Document, load, parse
+from slip.read.face import describes_face
+from slip.read.face import face as pressed_face
 from slip.read.pattern import pattern
 from slip.read.pressed import pressed
 from slip.read.reader import Reader
 from slip.read.schema import KEYS
 from slip.read.sections import Section, many, one
+from slip.read.table import table
 
 T = TypeVar("T")
 # What is taken for a standard when its entry is silent, and how it is said.
@@ -31,21 +34,24 @@ STANDARD_DEFAULTS = {
     },
 }
 # Tables of keys that are checked, not used yet.
-LATER = ("finite_elements", "fretting", "loosening", "scatter", "table")
+LATER = ("finite_elements", "fretting", "loosening", "scatter")
 
 
-def read(path: str | Path) -> Joint | PressedContact:
-    """The joint, or the pressed contact, of a TOML file. Raises Problems with every fault that could be found."""
-    return build(load(path))
+def read(path: str | Path, cases_in_table: bool = False) -> Joint | PressedContact | PressedFace:
+    """The joint, or the pressed contact, of a TOML file. Raises Problems with every fault that could be found.
+
+    cases_in_table: the load cases stand in a table apart, so that the file needs none.
+    """
+    return build(load(path), cases_in_table)
 
 
-def read_text(text: str, file: str = "joint") -> Joint | PressedContact:
+def read_text(text: str, file: str = "joint") -> Joint | PressedContact | PressedFace:
     """As `read`, of a TOML text, for scripts and tests; files that it names are looked for in the working directory."""
     return build(parse(text.encode("utf-8", "surrogatepass"), file, Path()))
 
 
-def build(document: Document) -> Joint | PressedContact:
-    """The joint, or the pressed contact, of a parsed document."""
+def build(document: Document, cases_in_table: bool = False) -> Joint | PressedContact | PressedFace:
+    """The joint, the pressed contact or the face of known pressure of a parsed document."""
     r = Reader(document)
     top = Section(r, (), "", document.tree)
     r.attempt(lambda: top.need("format", "the version of the file format", "add format = 1 at the top"))
@@ -53,6 +59,9 @@ def build(document: Document) -> Joint | PressedContact:
         r.attempt(partial(one, r, name))
     if "contact" in document.tree or "body" in document.tree:
         return pressed(r, document)
+    if describes_face(document):
+        _say_unused(r)
+        return pressed_face(r, document)
     bolts = r.attempt(lambda: pattern(r, one(r, "pattern")))
     layout = bolts.pattern if bolts else None
     bolt = r.attempt(lambda: hardware.bolt(r, one(r, "bolt")))
@@ -61,8 +70,9 @@ def build(document: Document) -> Joint | PressedContact:
     losses = r.attempt(lambda: assembly.losses(r, one(r, "losses"), plates, bolt))
     face = r.attempt(lambda: interface(r, one(r, "interface")))
     demands = r.attempt(lambda: required(r, one(r, "required")))
-    cases = r.attempt(lambda: loading.cases(r, layout))
-    axial = r.attempt(lambda: loading.axial(r, one(r, "axial"), plates, bolt, cases))
+    cases = r.attempt(lambda: loading.cases(r, layout, cases_in_table))
+    axial = r.attempt(lambda: loading.axial(r, one(r, "axial"), plates, bolt, cases, cases_in_table))
+    form = r.attempt(lambda: table(r, one(r, "table")))
     standards = r.attempt(lambda: _standards(r))
     if face and plates and face.parallel_faces > len(plates) - 1:
         found, most = f"{face.parallel_faces} faces between {len(plates)} plates", f"at most {len(plates) - 1}"
@@ -90,6 +100,7 @@ def build(document: Document) -> Joint | PressedContact:
         required=_there(demands),
         standards=_there(standards),
         cases=_there(cases),
+        table=_there(form),
         loosening_limit=bool(document.tree.get("loosening", {}).get("limit", False)),
         assumptions=tuple(r.assumptions),
         warnings=tuple(r.warnings),

@@ -9,13 +9,13 @@ from slip.read.reader import Reader
 from slip.read.sections import Section
 
 
-def interface(r: Reader, s: Section) -> Interface:
-    """[interface]; friction is never assumed."""
+def interface(r: Reader, s: Section, known: bool = False) -> Interface:
+    """[interface]; friction is never assumed. known: whether its pressure is what presses."""
     write = 'add friction = [lowest, highest], or friction = { pair = "steel / steel" }'
     friction: Friction = s.need("friction", "the friction of the sliding face, which is never assumed", write)
-    if s.has("pressure"):
-        remedy = "a face of known pressure without bolts is not assessed yet"
-        raise s.stop_value("pressure", "face-not-yet", "bolts that clamp", remedy)
+    if s.has("pressure") and not known:
+        expected = "no pressure beside bolts or a contact force, which make it"
+        raise s.stop_value("pressure", "pressure-twice", expected, "remove pressure, or the tables of what presses")
     if not s.has("parallel_faces"):
         r.assume("one-face", "one sliding face carries the load", "interface.parallel_faces")
     return Interface(

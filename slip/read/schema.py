@@ -221,7 +221,14 @@ KEYS: tuple[Key, ...] = (
         least=0,
         above=True,
     ),
-    Key("interface", "pressure", "pressure", "known pressure of a face without bolts", least=0, above=True, later=True),
+    Key(
+        "interface",
+        "pressure",
+        "pressure",
+        "known, even pressure over the overlap of the plates' outlines, in place of bolts",
+        least=0,
+        above=True,
+    ),
     Key("interface", "plate_shear", "flag", "count the plates' shear through the thickness", default="true"),
     # pattern
     Key("pattern", "positions", "positions", "[[x, y], ..]: names B1, B2, .. in this order"),
@@ -403,10 +410,10 @@ KEYS: tuple[Key, ...] = (
     Key("scatter", "distributions", "anything", "per input", later=True),
     Key("scatter", "correlation", "anything", "between inputs", later=True),
     Key("scatter", "target", "number", "reliability index to be met", later=True),
-    Key("table", "units", "choice", "of headers without a unit", choices=("N mm", "lbf in"), later=True),
-    Key("table", "columns", "anything", '{ Fx = "FX" }', later=True),
-    Key("table", "axes", "anything", '{ x = "X", y = "-Z", normal = "Y" }', later=True),
-    Key("table", "decimal", "choice", "decimal sign", choices=(".", ","), later=True),
+    Key("table", "units", "choice", "of headers without a unit", choices=("N mm", "lbf in")),
+    Key("table", "columns", "anything", '{ Fx = "FX" }'),
+    Key("table", "axes", "anything", '{ x = "X", y = "-Z", normal = "Y" }'),
+    Key("table", "decimal", "choice", "decimal sign", choices=(".", ",")),
 )
 
 BY_TABLE: dict[str, dict[str, Key]] = {name: {k.name: k for k in KEYS if k.table == name} for name in TABLES}

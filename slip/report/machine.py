@@ -19,6 +19,7 @@ from slip.report.equations import Explanation
 from slip.report.partial import partial_entry, stiffness_entry
 from slip.verdict.checks import Check
 from slip.verdict.gross_slip import End
+from slip.verdict.stage import Verdict
 from slip.verdict.standards.common import Judgement
 
 FORMAT = 1
@@ -41,7 +42,7 @@ def result(assessment: Assessment, units: System | None = None) -> dict[str, Any
         "grows": joint.required.grows,
         "friction": friction_entry(joint.interface),
         "governing": governing_entry(verdict.governing, grows),
-        "answers": {"slip": _answer(assessment), "stiffness": "not assessed", "cycles": "not assessed"},
+        "answers": {"slip": slip_answer(verdict), "stiffness": "not assessed", "cycles": "not assessed"},
         "assumptions": [note.as_dict() for note in assessment.assumptions],
         "warnings": [note.as_dict() for note in assessment.warnings],
         "checks": [check_entry(check) for check in verdict.checks],
@@ -63,7 +64,7 @@ def explanation_text(explanation: Explanation) -> str:
         "format": FORMAT,
         "case": explanation.case,
         "end": explanation.end,
-        "bolt": explanation.bolt,
+        **({"bolt": explanation.bolt} if explanation.bolt else {}),
         "lines": [line.as_dict() for line in explanation.lines],
         "sources": {key: said for key in keys if (said := citation(key))},
     }
@@ -89,12 +90,16 @@ def friction_entry(face: Interface) -> dict[str, Any]:
     }
 
 
-def _answer(assessment: Assessment) -> str:
-    """The answer to the first question; limits of the other two questions do not count here."""
-    slipping = [c for c in assessment.verdict.checks if c.decides and c.check not in ("true_slip", "loosening")]
-    if all(check.holds for check in slipping):
-        return "holds"
-    return "fails" if any(check.solved and not check.holds for check in slipping) else "not assessed"
+def slip_answer(verdict: Verdict) -> str:
+    """The answer to the first question, for joints and contacts alike: it fails when any check that decides fails.
+
+    A limit of true slip or loosening that could not be judged leaves it to the checks of slip itself.
+    """
+    deciding = [check for check in verdict.checks if check.decides]
+    if any(check.solved and not check.holds for check in deciding):
+        return "fails"
+    held = all(check.holds for check in deciding if check.check not in ("true_slip", "loosening"))
+    return "holds" if held else "not assessed"
 
 
 def _put(target: dict[str, Any], **values: Any) -> dict[str, Any]:
@@ -181,10 +186,10 @@ def ledger(assessment: Assessment, states: int | Sequence[int], system: System) 
     bolts = np.arange(assessment.joint.pattern.count)
     at = np.broadcast_to(states, bolts.shape), bolts
     forces = {
-        "assembly_low": a.low,
+        "assembly_low": found.preload_low[at],
         "assembly_high": a.high,
         "embedding": a.embedding,
-        "relaxation": a.relaxation,
+        "relaxation": found.relaxation[at],
         "thermal_loss": found.thermal_loss[at],
         "thermal_gain": found.thermal_gain[at],
         "axial_relief": found.relief[at],

@@ -66,7 +66,11 @@ def short(value: float) -> str:
 
 def partial_line(assessment: Assessment, case: int, end: str, system: System) -> str:
     """One sentence on the partial slip of an end, typical reading and band; '' where there is nothing to say."""
-    found = assessment.partial.of(case, end)
+    return said_of(assessment.partial.of(case, end), system)
+
+
+def said_of(found: PartialSlip | None, system: System) -> str:
+    """The same of a partial slip that is at hand."""
     if found is None or not found.model:
         return ""
     if not found.readings:

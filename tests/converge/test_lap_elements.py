@@ -14,7 +14,8 @@ from scipy.sparse.linalg import splu
 from skfem import Basis, ElementQuad2, ElementVector, MeshQuad, asm
 from skfem.models.elasticity import lame_parameters, linear_elasticity
 
-from slip.friction.compliance.strips import Strips, through_thickness
+from slip.friction.closed.layers import thickness_compliance
+from slip.friction.compliance.strips import Strips
 from slip.friction.march.face import Face
 from slip.friction.march.step import step
 
@@ -112,7 +113,7 @@ def _simpson(x):
 
 def strips(t, L, k_t):
     G = E / (2 * (1 + NU))
-    shear = float(through_thickness(t, G) * 2)
+    shear = float(thickness_compliance(t, G) * 2)
     return Strips(L, WIDTH, 400, (E * t * WIDTH, E * t * WIDTH), layer=k_t, shear=shear)
 
 

@@ -13,7 +13,8 @@ import numpy as np
 import pytest
 from scipy.optimize import brentq
 
-from slip.friction.compliance.strips import Strips, through_thickness
+from slip.friction.closed.layers import thickness_compliance
+from slip.friction.compliance.strips import Strips
 from slip.friction.march.face import Face
 from slip.friction.march.history import march
 from slip.friction.march.step import step
@@ -185,7 +186,7 @@ def test_compliance_error_of_a_layer(k_t, percent):
 )
 def test_compliance_error_with_shear_through_the_thickness(nu, per_area, percents):
     """Against rigid stick of the same bars with t/(3G) of both."""
-    shear = 2 * float(through_thickness(12.0, 210e3 / 2 / (1 + nu)))
+    shear = 2 * float(thickness_compliance(12.0, 210e3 / 2 / (1 + nu)))
     assert 1 / shear == pytest.approx(per_area, abs=0.5)
     reference = stuck_motion(shear=shear)
     for k_t, percent in zip((3000.0, 12000.0, 120000.0), percents, strict=True):

@@ -4,7 +4,8 @@ import numpy as np
 import pytest
 
 from slip.pressure.patch import from_profile
-from slip.pressure.receding import Body, contact
+from slip.pressure.receding import contact
+from slip.pressure.rings import Body
 from slip.pressure.stage import AROUND, RINGS
 
 E, NU, MU = 210000.0, 0.3, 0.2
@@ -120,6 +121,15 @@ def test_static_case_has_no_energy_and_beyond_gross_slip_nothing_is_computed(run
     assert "energy_per_cycle" not in static
     beyond, _, code = entry(run_check, single(8100, "tangential_stiffness = [20000, 20000]"))
     assert code == 1 and "slips wholly" in beyond["reason"] and "true_slip" not in beyond
+
+
+def test_no_cycle_where_the_other_end_slips_wholly(run_check):
+    text = single(3000, "tangential_stiffness = [20000, 20000]").replace(
+        "ratio = -1", "other_end = { shear = [-9000, 0] }"
+    )
+    found, _, code = entry(run_check, text)
+    assert code == 1 and found["stiffness"] > 0 and "energy_per_cycle" not in found
+    assert any("no energy of a cycle" in note for note in found["notes"])
 
 
 def test_own_limit_of_true_slip_decides(run_check):

@@ -47,7 +47,7 @@ def nearly(found, stored) -> bool:
 # golden
 
 
-@pytest.mark.parametrize("name", [n for n in MAKER.COMMANDS if n.endswith(".txt")])
+@pytest.mark.parametrize("name", [n for n in MAKER.COMMANDS if n.endswith((".txt", ".html"))])
 def test_text_is_the_stored_one(name):
     assert MAKER.said(MAKER.COMMANDS[name]) == golden(name), (
         "read the difference, then python tests/shown/make_golden.py"

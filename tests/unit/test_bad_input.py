@@ -188,13 +188,13 @@ BAD = [
         ["of the two faces"],
     ),
     (
-        "pressure without bolts",
+        "pressure beside bolts",
         FRICTION,
         f"{FRICTION}\npressure = 60",
-        "face-not-yet",
+        "pressure-twice",
         21,
         "interface.pressure",
-        ["not assessed yet"],
+        ["no pressure beside bolts", "remove pressure"],
     ),
     # bolt
     ("thread that is not made", THREAD, 'thread = "M17"', "unknown-thread", 4, "bolt.thread", ['did you mean "M16"?']),

@@ -38,6 +38,12 @@ def csch(x: Value) -> Value:
 # Two strips: decay and stiffness of the stuck joint
 
 
+@formula("k", "k_A*b", unit="N/mm^2", source="statics", basis="derived", valid="the same over the width b")
+def line_stiffness(k_A: Value, b: Value) -> Value:
+    """Shear stiffness per length [N/mm2] of an interface of k_A [N/mm3] over a width b (statics, derived)."""
+    return k_A * b
+
+
 @formula("D", "1/EA_1 + 1/EA_2", unit="1/N", **LAG, valid="EA_1 = inf: rigid base")
 def strain_per_force(EA_1: Value, EA_2: Value) -> Value:
     """Difference of the strips' strains per force passed on [1/N] (volkersen1938 and statics, derived)."""

@@ -1,4 +1,4 @@
-"""Plates that shear through their thickness, and two layers that slip on each other in bending.
+"""Plates that stretch or shear through their thickness, and two layers that slip on each other in bending.
 
 Lengths in mm, forces in N, moduli and pressures in MPa; everything broadcasts, energies are even in the load.
 """
@@ -16,7 +16,13 @@ BENDING: dict[str, Any] = {"source": "goodman_klumpp1956", "basis": "derived"}
 THROUGH: dict[str, Any] = {"source": "tsai1998", "basis": "derived"}
 
 
-# Shear through the thickness
+# Stretch, and shear through the thickness
+
+
+@formula("EA", "E*t*b", unit="N", source="statics", basis="derived", valid="thickness t, width b")
+def strip_stiffness(E: Value, t: Value, b: Value) -> Value:
+    """Stiffness EA [N] of a strip of thickness t and width b: force for each unit of strain (statics, derived)."""
+    return E * t * b
 
 
 @formula("t/(3 G)", "t/(3*G)", unit="mm^3/N", **THROUGH, valid="shear stress falls linearly, omega t < 0.3")

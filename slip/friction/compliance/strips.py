@@ -17,23 +17,12 @@ COARSEST = 16  # cells that are not coarsened further
 LEAST_LOCAL = 1e-3  # local compliance that the near inverse takes at least, in parts of what one cell's stretch adds
 
 
-def through_thickness(t: ArrayLike, G: ArrayLike) -> Array:
-    """Compliance per area [mm/MPa] that shear through its thickness gives a plate with traction on one face.
-
-    t: thickness [mm]; G: shear modulus [MPa]; they broadcast. A linear fall of the shear stress over the thickness
-    gives t/(3G). Both plates add theirs.
-    Range: w t < 0.3 with w the inverse of the decay length, else too small a correction.
-    Source: Tsai, Oplinger, Morton 1998. Basis: memory, confirmed by a two-dimensional finite-element model.
-    """
-    return np.asarray(t, dtype=float) / (3.0 * np.asarray(G, dtype=float))
-
-
 class Strips:
     """Strip 1 pulled at x = length, strip 2 at x = 0: the motion is that of the pulled ends apart, the load their pull.
 
     length, width: of the overlap [mm]. cells: of equal length along x. stiffness: (EA1, EA2) [N]; inf is rigid.
     layer: k_t [N/mm^3], scalar or (cells,), inf where there is none; None for none.
-    shear: compliance per area [mm/MPa] of both plates' shear through the thickness (`through_thickness`), a part of the
+    shear: compliance per area [mm/MPa] of both plates' shear through the thickness (closed/layers.py), a part of the
     bodies.
 
     A pull P that has passed into strip 1 up to x stretches it by P/EA1 and leaves the rest to strip 2:

@@ -1,0 +1,44 @@
+"""Checks of a face of known pressure: gross slip of the whole, the force alone, and the file's own limit of true slip."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+from slip.friction.known_pressure import FaceSlip
+from slip.friction.partial import NO_SHEAR
+from slip.joint.contact import PressedFace
+from slip.verdict.checks import Check
+from slip.verdict.gross_slip import LONE
+from slip.verdict.stage import Verdict, against, conclude
+
+
+def face_verdict(face: PressedFace, slips: Mapping[tuple[int, str], FaceSlip]) -> Verdict:
+    """All checks of a face and what they add up to. The face slips as a whole: the group factor decides."""
+    checks = []
+    for (i, end), found in slips.items():
+        name, alternating = face.cases[i].name, face.cases[i].alternating
+        least = face.required.alternating if alternating else face.required.static
+        for what, factor, decides in (
+            ("gross_slip.group", float(found.group.factor), True),
+            ("gross_slip.force_only", found.force_factor, False),
+        ):
+            reason = NO_SHEAR if not found.sliding else "" if decides else LONE
+            holds, reserve = factor >= least, factor / least
+            checks.append(Check(what, name, end, "", factor, factor, least, reserve, holds, decides, reason))
+        if face.required.true_slip is not None:
+            checks.append(_true_slip(face.required.true_slip, name, end, found))
+    return conclude(checks, (), {})
+
+
+def _true_slip(most: float, case: str, end: str, found: FaceSlip) -> Check:
+    """The largest true slip of the three readings of the face's stiffness against the file's own limit [mm]."""
+    known = found.partial
+    reason = found.reason if known is None else "" if known.reason == NO_SHEAR else known.reason
+    if known is not None and known.wholly:  # there is no end to its slip
+        return Check("true_slip", case, end, "", None, None, None, 0.0, False, True, reason)
+    if known is None or reason:
+        said = f"not solved: {reason}"
+        return Check("true_slip", case, end, "", None, None, None, None, False, True, said, solved=False)
+    slip = max((reading.true_slip for reading in known.readings), default=0.0)
+    reserve = most / slip if slip > 0 else float("inf")
+    return Check("true_slip", case, end, "", None, None, None, reserve, bool(slip <= most), True, against(slip, most))
