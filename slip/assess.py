@@ -7,6 +7,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING, Literal
 
 from slip.base.notes import Note
+from slip.base.progress import Progress
 from slip.base.records import record
 from slip.clamp.stage import Clamp, clamp
 from slip.clamp.states import States
@@ -95,42 +96,41 @@ class FaceAssessment:
 Subject = Joint | PressedContact | PressedFace
 
 
-def assess(joint: Subject | str | Path) -> Assessment | PressedAssessment | FaceAssessment:
+def assess(
+    joint: Subject | str | Path, progress: Progress | None = None
+) -> Assessment | PressedAssessment | FaceAssessment:
     """The assessment of a joint, a pressed contact or a face of known pressure, or of the joint file at a path.
 
+    progress: called as cases and ends are worked out, where that takes long.
     Raises slip.base.errors.Problems for a wrong file, NotConverged where a numerical answer could not be proven.
     """
     if isinstance(joint, (str, Path)):
         joint = read(joint)
     if isinstance(joint, PressedFace):
-        return _face(joint)
-    return _pressed(joint) if isinstance(joint, PressedContact) else _bolted(joint)
+        return _face(joint, progress)
+    return _pressed(joint, progress) if isinstance(joint, PressedContact) else assess_states(joint, progress=progress)
 
 
-def _pressed(contact: PressedContact) -> PressedAssessment:
+def _pressed(contact: PressedContact, progress: Progress | None) -> PressedAssessment:
     from slip.friction.pressed.stage import pressed_slips  # brings SciPy's transforms; only a contact pays for them
     from slip.verdict.pressed import pressed_verdict  # likewise
 
-    slips = pressed_slips(contact)
+    slips = pressed_slips(contact, progress)
     return PressedAssessment(contact, slips, pressed_verdict(contact, slips))
 
 
-def _face(face: PressedFace) -> FaceAssessment:
+def _face(face: PressedFace, progress: Progress | None) -> FaceAssessment:
     from slip.friction.known_pressure import face_slips  # only a face of known pressure pays for its way
     from slip.verdict.pressed_face import face_verdict  # likewise
 
-    slips = face_slips(face)
+    slips = face_slips(face, progress)
     return FaceAssessment(face, slips, face_verdict(face, slips))
 
 
-def _bolted(joint: Joint) -> Assessment:
-    return assess_states(joint)
-
-
-def assess_states(joint: Joint, loaded: States | None = None) -> Assessment:
+def assess_states(joint: Joint, loaded: States | None = None, progress: Progress | None = None) -> Assessment:
     """The assessment of a joint under its own cases, or under states that a table gives in their place."""
     held = clamp(joint, loaded)
     pressed = pressure(joint, turning=bool((held.states.load[:, 2] != 0).any()))
     slipping = slip(joint, held.states, held.ledger, pressed)
-    partial = Partial(joint, held, pressed, slipping)
+    partial = Partial(joint, held, pressed, slipping, progress)
     return Assessment(joint, held, pressed, slipping, partial, verdict(joint, held, pressed, slipping, partial))

@@ -10,22 +10,19 @@ from slip.base.errors import NotConverged
 from slip.base.records import record
 from slip.base.trace import Trace
 from slip.cases.acting import acting, part
+from slip.cases.candidates import Candidate, candidate, extras, first_least, governing
 from slip.cases.rows import Block
 from slip.clamp.assembly import Assembly, assemble
 from slip.clamp.stage import Clamp, Highest, highest, ledger, refuse_impossible
 from slip.clamp.states import not_carried, shared
-from slip.friction.partial import Partial
 from slip.friction.stage import Slip, slip
 from slip.joint.joint import Joint
-from slip.joint.loads import Case, Load
 from slip.pressure.stage import Pressure, pressure
-from slip.verdict.by_standard import judge_standard
-from slip.verdict.checks import TIE, Check
+from slip.verdict.checks import TIE
 from slip.verdict.gross_slip import deciding
-from slip.verdict.stage import FAILS, HOLDS, NOT_SOLVED, not_solved, true_slip
+from slip.verdict.stage import not_solved
 
 Array = np.ndarray
-ENDS = ("given", "other")
 NOT_PROVEN = "the group factor could not be proven"
 TILTED = "a tilting moment that the pattern cannot carry"
 
@@ -219,103 +216,28 @@ class _Verdict:
 
     def _decided(self, of_bolts: dict[str, Array], of_group: dict[str, Array], apart: Array) -> dict[str, Array]:
         """Code, and what governs, of every case: checks in the order of a joint's verdict."""
-        candidates: list[tuple[str, int, Array, Array, Array, Array]] = []  # check, end, bolt, factor, reserve, solved
-        every, none = np.ones(self.C, dtype=bool), np.full(self.C, -1)
-        extra = self._extras()
+        candidates: list[Candidate] = []
+        none, nan = np.full(self.C, -1), np.full(self.C, np.nan)
+        extra = extras(self.joint, self.clamp, self.pressure, self.slip, self.block, self.at)
         for end in (0, 1):
             if self.joint.required.decides == "per bolt":
-                reserves = of_bolts["reserves"][end]
-                bolt = _first_least(reserves)
-                reserve = np.take_along_axis(reserves, bolt[:, None], 1)[:, 0]
-                factor = np.take_along_axis(of_bolts["factors"][end], bolt[:, None], 1)[:, 0]
-                candidates.append(("gross_slip.per_bolt", end, bolt, factor, reserve, every))
+                reserve, factor = of_bolts["reserves"][end], of_bolts["factors"][end]
+                bolt = first_least(reserve)
+                candidates.append(candidate("gross_slip.per_bolt", end, bolt, _of(factor, bolt), _of(reserve, bolt)))
             else:
-                reserve = of_group["reserves"][end]
-                candidates.append(("gross_slip.group", end, none, of_group["factors"][end], reserve, every))
-            bolt = _first_least(apart[end])
-            factor = np.take_along_axis(apart[end], bolt[:, None], 1)[:, 0]
-            candidates.append(("separation", end, bolt, factor, factor / self.least, every))
-            candidates += extra[end]
-        candidates += [
-            (c.check, 0, none, np.full(self.C, np.nan), np.full(self.C, np.nan), ~every) for c in not_solved(self.joint)
-        ]
-        reserves = np.stack([reserve for _, _, _, _, reserve, _ in candidates])
-        solved = np.stack([s for _, _, _, _, _, s in candidates]) & ~np.isnan(reserves)
-        failed = solved & ~(reserves >= 1)
-        for k, (name, *_) in enumerate(candidates):
-            if name.startswith("standard."):
-                failed[k] |= solved[k] & self.unmet[name, candidates[k][1]]
-        code = np.where(failed.any(0), FAILS, np.where(solved.all(0), HOLDS, NOT_SOLVED))
-        code = np.where(self.block.open_reason != "", NOT_SOLVED, code)
-        ranked = np.where(failed.any(0), np.where(failed, reserves, np.inf), np.where(solved, reserves, np.inf))
-        governs = _first_least(ranked.T)
-        one = np.arange(self.C)
-        return {
-            "code": code,
-            "check": np.array([c[0] for c in candidates])[governs],
-            "end": np.array([c[1] for c in candidates])[governs],
-            "bolt": np.stack([c[2] for c in candidates])[governs, one],
-            "factor": np.stack([c[3] for c in candidates])[governs, one],
-            "reserve": reserves[governs, one],
-        }
+                reserve, factor = of_group["reserves"][end], of_group["factors"][end]
+                candidates.append(candidate("gross_slip.group", end, none, factor, reserve))
+            bolt = first_least(apart[end])
+            factor = _of(apart[end], bolt)
+            candidates += [candidate("separation", end, bolt, factor, factor / self.least), *extra[end]]
+        never = np.zeros(self.C, dtype=bool)
+        candidates += [Candidate(c.check, 0, none, nan, nan, never, never) for c in not_solved(self.joint)]
+        return governing(candidates, self.block.open_reason != "")
 
-    def _extras(self) -> list[list[tuple[str, int, Array, Array, Array, Array]]]:
-        """Listed standards and the limit of true slip, case by case as a joint file has them judged."""
-        self.unmet: dict[tuple[str, int], Array] = {}
-        joint, most = self.joint, self.joint.required.true_slip
-        if not self.C or (not joint.standards and most is None):
-            return [[], []]
-        names = self.block.names.to_list()
-        both = ("given", Load((0, 0), 0, (0, 0, 0))), ("other", Load((0, 0), 0, (0, 0, 0)))
-        cases = tuple(
-            Case(
-                name,
-                True,
-                both if self.at[1, i] >= 0 else both[:1],
-                None,
-                None,
-                bool(self.block.alternating[i]),
-                False,
-                None,
-                None,
-            )
-            for i, name in enumerate(names)
-        )
-        joint = replace(joint, cases=cases)
-        partial = Partial(joint, self.clamp, self.pressure, self.slip) if most is not None else None
-        found: list[list[tuple[str, int, Array, Array, Array, Array]]] = []
-        for end in (0, 1):
-            listed: list[list[Check]] = []
-            for i in range(self.C):
-                row = self.at[end, i]
-                if row < 0:
-                    listed.append([])
-                    continue
-                rows = np.array([row])
-                checks = [
-                    judge_standard(joint, self.clamp, self.slip, self.pressure, s, i, ENDS[end], rows).check
-                    for s in joint.standards
-                ]
-                if partial is not None and most is not None:
-                    checks.append(true_slip(joint, partial, most, i, ENDS[end]))
-                listed.append(checks)
-            found.append(self._as_candidates(listed, end))
-        return found
 
-    def _as_candidates(self, listed: list[list[Check]], end: int) -> list[tuple[str, int, Array, Array, Array, Array]]:
-        """Checks of each case as columns; where a case has no such end nothing limits."""
-        known = {name: i for i, name in enumerate(self.joint.pattern.names)}
-        made = []
-        for k, name in enumerate(next((dict.fromkeys(c.check for c in checks) for checks in listed if checks), {})):
-            one = [checks[k] if checks else None for checks in listed]
-            reserve = np.array(
-                [np.inf if c is None else np.nan if c.reserve_factor is None else c.reserve_factor for c in one]
-            )
-            bolt = np.array([-1 if c is None else known.get(c.bolt, -1) for c in one])
-            solved = np.array([c is None or c.solved for c in one])
-            self.unmet[name, end] = np.array([c is not None and c.solved and not c.holds for c in one])
-            made.append((name, end, bolt, np.full(self.C, np.nan), reserve, solved))
-        return made
+def _of(values: Array, bolt: Array) -> Array:
+    """Of values (C, n) that of the bolt of each case."""
+    return np.take_along_axis(values, bolt[:, None], 1)[:, 0]
 
 
 def _tied_first(first: Array, second: Array) -> Array:
@@ -325,17 +247,6 @@ def _tied_first(first: Array, second: Array) -> Array:
         return np.where(
             np.isnan(first), True, np.where(np.isnan(second), False, ~(first > least + TIE * np.abs(least)))
         )
-
-
-def _first_least(values: Array) -> Array:
-    """As checks.first_least for each row of (C, k)."""
-    if not values.size:
-        return np.zeros(len(values), dtype=int)
-    values = np.where(np.isnan(values), -np.inf, values)
-    least = values.min(axis=1, keepdims=True)
-    with np.errstate(invalid="ignore"):
-        tied = np.where(np.isfinite(least), values <= least + TIE * np.abs(least), values == least)
-    return np.argmax(tied, axis=1)
 
 
 def _pick(values: Array, end: Array) -> Array:

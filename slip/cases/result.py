@@ -7,8 +7,9 @@ import polars as pl
 
 from slip.base.records import record
 from slip.base.units import System
+from slip.cases.candidates import ENDS
 from slip.cases.form import Form
-from slip.cases.judge import ENDS, Judged
+from slip.cases.judge import Judged
 from slip.cases.rows import Block
 from slip.joint.joint import Joint
 from slip.verdict.stage import HOLDS

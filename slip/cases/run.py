@@ -2,34 +2,33 @@
 
 from __future__ import annotations
 
-from collections import deque
-from collections.abc import Callable, Iterable, Iterator
-from concurrent.futures import Executor, Future
+from collections.abc import Iterable
+from concurrent.futures import Executor
 from pathlib import Path
 
 import numpy as np
-import polars as pl
 
 from slip.base.errors import InputError, Problems
 from slip.base.notes import Note
+from slip.base.progress import Progress
 from slip.base.records import record
-from slip.base.units import SYSTEMS, System
-from slip.cases.balance import Loads, imbalance
+from slip.base.units import System
+from slip.cases.balance import Loads
 from slip.cases.form import Form
 from slip.cases.gather import gathered
 from slip.cases.hints import hints
-from slip.cases.judge import Prepared, judge, prepare
-from slip.cases.result import Wanted, result
-from slip.cases.rows import REFUSED, Scattered, read_rows
-from slip.cases.stream import Chunk, Table
-from slip.cases.summary import Summary, summed
+from slip.cases.judge import Prepared, prepare
+from slip.cases.result import Wanted
+from slip.cases.rows import REFUSED, Scattered
+from slip.cases.stream import Table
+from slip.cases.summary import Summary
+from slip.cases.work import Done, Job, header, in_order
 from slip.cases.write import Checkpoint, Output, Style, encoded, style
 from slip.joint.contact import PressedContact, PressedFace
 from slip.joint.joint import Joint
 from slip.read.build import read
 from slip.verdict.stage import NOT_SOLVED
 
-Progress = Callable[[int, int], None]
 AHEAD = 4  # chunks handed to an executor beyond the one that is waited for
 
 
@@ -63,47 +62,6 @@ class TableResult:
 
 class Interrupted(KeyboardInterrupt):
     """A run was stopped by its user; the text says what is kept."""
-
-
-@record(eq=False)
-class Job:
-    """What every chunk is worked with; goes to other processes and machines as it is."""
-
-    ready: Prepared
-    form: Form
-    wanted: Wanted
-    how: Style
-    loads: Loads | None
-
-
-@record(eq=False)
-class Done:
-    """A chunk that has been worked: its part of the result, the rows refused, its summary, marks of its cases, how far it reaches."""
-
-    data: bytes
-    refused: pl.DataFrame
-    summary: Summary
-    marks: np.ndarray
-    line: int
-    until: int
-
-
-def work(job: Job, chunk: Chunk) -> Done:
-    """One chunk from its bytes to the bytes of its result. Raises Scattered where cases do not stand together."""
-    joint, form = job.ready.joint, job.form
-    frame, broken = chunk.rows(form)
-    found = read_rows(joint, form, frame, broken)
-    judged = judge(job.ready, found.block, form.bolts)
-    data = b""
-    if job.how.kind:
-        table = result(joint, form, frame, found.block, judged, job.wanted)
-        data = encoded(table, job.how)
-    summary = summed(joint, form, found, judged)
-    if job.loads is not None:
-        summary.balance, summary.balanced = imbalance(joint, form, found.block, job.loads)
-    marks = found.block.names.hash().to_numpy()
-    breaks = chunk.data.count(b"\n") if isinstance(chunk.data, bytes) else 0
-    return Done(data, found.refused, summary, marks, chunk.line + breaks, chunk.until)
 
 
 def check_table(
@@ -216,7 +174,7 @@ class _Run:
             if self.gathering
             else self.table.chunks(*start, size)
         )
-        for done in _in_order(self.job, chunks, executor, ahead):
+        for done in in_order(self.job, chunks, executor, ahead):
             if not self.gathering:
                 if np.isin(done.marks, self.marks).any():
                     raise Scattered
@@ -229,7 +187,7 @@ class _Run:
         """Write one chunk and remember how far the run has come."""
         if self.writer:
             if self.job.how.kind == "csv" and not self.writer.size:
-                self.writer.add(_header(self.job))
+                self.writer.add(header(self.job))
             self.writer.add(done.data)
         if done.refused.height:
             if not self.lost.size:
@@ -313,39 +271,3 @@ class _Run:
             self.job.ready, self.table.form, summary, assumptions, warnings, self.out, self.refused if kept else None,
             self.table.digest, code,
         )  # fmt: skip
-
-
-def _header(job: Job) -> bytes:
-    """The header of a CSV of results, from a chunk without cases."""
-    empty = pl.DataFrame(
-        schema={str(i): pl.String for i in range(job.form.width)} | {"extra": pl.String, "line": pl.Int64}
-    )
-    found = read_rows(job.ready.joint, job.form, empty, [])
-    table = result(
-        job.ready.joint, job.form, empty, found.block, judge(job.ready, found.block, job.form.bolts), job.wanted
-    )
-    return encoded(table, job.how, header=True)
-
-
-def _in_order(job: Job, chunks: Iterator[Chunk], executor: Executor | None, ahead: int) -> Iterator[Done]:
-    """Chunks worked here or by an executor, in their order; few are on the way at a time, so that memory stays bounded."""
-    if executor is None:
-        for chunk in chunks:
-            yield work(job, chunk)
-        return
-    waiting: deque[Future[Done]] = deque()
-    try:
-        for chunk in chunks:
-            waiting.append(executor.submit(work, job, chunk))
-            if len(waiting) > ahead:
-                yield waiting.popleft().result()
-        while waiting:
-            yield waiting.popleft().result()
-    finally:
-        for future in waiting:
-            future.cancel()
-
-
-def system_of(name: str | None) -> System | None:
-    """A system of units by its name."""
-    return SYSTEMS[name] if name else None

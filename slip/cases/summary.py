@@ -7,8 +7,9 @@ from typing import Any
 import numpy as np
 
 from slip.base.records import record
+from slip.cases.candidates import ENDS
 from slip.cases.form import Form
-from slip.cases.judge import ENDS, Judged, largest
+from slip.cases.judge import Judged, largest
 from slip.cases.result import known_bolts
 from slip.cases.rows import Block, Read
 from slip.clamp.stage import Highest

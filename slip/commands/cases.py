@@ -3,59 +3,85 @@
 from __future__ import annotations
 
 import argparse
-from concurrent.futures import Executor, ProcessPoolExecutor
+import os
 from contextlib import AbstractContextManager, nullcontext
-from multiprocessing import get_context
 from pathlib import Path
+from typing import TYPE_CHECKING
 
 from slip.base.errors import InputError, Problems
-from slip.cases.run import Progress, TableResult, check_table
-from slip.commands.outcome import Outcome, units, write
-from slip.report.cases import cases_json, cases_text
+from slip.base.progress import Progress
+from slip.commands.outcome import Outcome, report_options, units, write
+
+if TYPE_CHECKING:
+    from concurrent.futures import Executor
+
+    from slip.cases.run import TableResult
 
 TOP = 20  # governing rows in JSON and on the page, where nobody asks for another number
 
 
-def cases(options: argparse.Namespace, progress: Progress | None) -> Outcome:
+def options(parser: argparse.ArgumentParser) -> None:
+    """What the command takes."""
+    parser.add_argument("file", metavar="FILE", help="the joint file; its own load cases do not count")
+    parser.add_argument("table", metavar="TABLE", help="CSV or Parquet: forces of each bolt, or loads of the joint")
+    parser.add_argument("--out", metavar="OUT", help="write a row for each bolt and case: OUT.csv or OUT.parquet")
+    parser.add_argument("--refused", metavar="OUT.csv", help="where rows that cannot be used go")
+    parser.add_argument("--loads", metavar="TABLE", help="joint loads that the bolt forces are added up against")
+    parser.add_argument("--top", metavar="N", type=int, help="list the N cases nearest to slip")
+    parser.add_argument("--case", metavar="NAME", action="append", default=[], help="show and write this case only")
+    parser.add_argument("--bolt", metavar="NAME", action="append", default=[], help="show and write this bolt only")
+    parser.add_argument("--resume", action="store_true", help="go on with an interrupted run that wrote to OUT")
+    parser.add_argument("--workers", metavar="N", type=int, default=1, help="processes that share the work")
+    parser.add_argument("--json", action="store_true", help="the summary for programs, on standard output")
+    report_options(parser)
+
+
+def run(asked: argparse.Namespace, progress: Progress | None) -> Outcome:
     """Work the table, write what is asked for, and say what came out."""
-    if options.top is not None and options.top < 1:
-        raise Problems(
-            [InputError("out-of-limits", "--top", str(options.top), "1 or more", "write for instance --top 20")]
-        )
-    with _executor(options.workers) as executor:
+    for name, value in (("--top", asked.top), ("--workers", asked.workers)):
+        if value is not None and value < 1:
+            write_ = f"write for instance {name} 4"
+            raise Problems([InputError("out-of-limits", name, str(value), "1 or more", write_)])
+    for name in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
+        os.environ.setdefault(name, "1")  # the workers are processes; threads inside them only get in each other's way
+    from slip.cases.run import check_table
+    from slip.report.cases import cases_json, cases_text
+
+    with _executor(asked.workers) as executor:
         found = check_table(
-            options.file,
-            options.table,
-            options.out,
-            refused=options.refused,
-            loads=options.loads,
-            cases=options.case,
-            bolts=options.bolt,
-            units=units(options),
-            resume=options.resume,
+            asked.file,
+            asked.table,
+            asked.out,
+            refused=asked.refused,
+            loads=asked.loads,
+            cases=asked.case,
+            bolts=asked.bolt,
+            units=units(asked),
+            resume=asked.resume,
             executor=executor,
-            ahead=2 * options.workers,
+            ahead=2 * asked.workers,
             progress=progress,
         )
-    if options.report:
-        _report(found, options)
-    asked = options.case, options.bolt
-    if options.json:
-        return Outcome(cases_json(found, units(options), options.top or TOP, *asked), found.exit_code)
-    return Outcome(cases_text(found, units(options), options.top, *asked), found.exit_code)
+    if asked.report:
+        _report(found, asked)
+    chosen = asked.case, asked.bolt
+    if asked.json:
+        return Outcome(cases_json(found, units(asked), asked.top or TOP, *chosen), found.exit_code)
+    return Outcome(cases_text(found, units(asked), asked.top, *chosen), found.exit_code)
 
 
 def _executor(workers: int) -> AbstractContextManager[Executor | None]:
     """Processes that share the chunks; none for one worker."""
-    if workers < 1:
-        raise Problems(
-            [InputError("out-of-limits", "--workers", str(workers), "1 or more", "write for instance --workers 4")]
-        )
-    return nullcontext() if workers == 1 else ProcessPoolExecutor(workers, mp_context=get_context("spawn"))
+    if workers == 1:
+        return nullcontext()
+    from concurrent.futures import ProcessPoolExecutor
+    from multiprocessing import get_context
+
+    return ProcessPoolExecutor(workers, mp_context=get_context("spawn"))
 
 
-def _report(found: TableResult, options: argparse.Namespace) -> None:
+def _report(found: TableResult, asked: argparse.Namespace) -> None:
     from slip.report.cases_page import cases_page
 
-    text = cases_page(found, options.table, units(options), options.top or TOP, options.case, options.bolt)
-    write(Path(options.report), text, (Path(options.file), Path(options.table)))
+    text = cases_page(found, asked.table, units(asked), asked.top or TOP, asked.case, asked.bolt)
+    write(Path(asked.report), text, [Path(asked.file), Path(asked.table)])

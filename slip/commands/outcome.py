@@ -20,9 +20,15 @@ class Outcome(NamedTuple):
     code: int = 0
 
 
-def units(options: argparse.Namespace) -> System | None:
+def report_options(parser: argparse.ArgumentParser) -> None:
+    """The options of every command that can write a page."""
+    parser.add_argument("--report", metavar="OUT.html", help="write one self-contained page")
+    parser.add_argument("--units", choices=tuple(SYSTEMS), help="units of the result; default those of the file")
+
+
+def units(asked: argparse.Namespace) -> System | None:
     """The system of units that is asked for, None for that of the file."""
-    return SYSTEMS[options.units] if options.units else None
+    return SYSTEMS[asked.units] if asked.units else None
 
 
 def write(path: Path, text: str, sources: Iterable[Path]) -> None:

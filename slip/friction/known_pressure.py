@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
+from slip.base.progress import Progress, told
 from slip.base.records import record
 from slip.base.trace import Trace
 from slip.friction.closed import lap as form
@@ -53,10 +54,11 @@ class FaceSlip:
         return bool(self.load.any())
 
 
-def face_slips(face: PressedFace) -> dict[tuple[int, str], FaceSlip]:
+def face_slips(face: PressedFace, progress: Progress | None = None) -> dict[tuple[int, str], FaceSlip]:
     """Both ends of every case by (case, end), at the lowest friction."""
     stiffness = face_stiffness(face)
-    return {(i, end): _end(face, stiffness, case, end) for i, case in enumerate(face.cases) for end, _ in case.ends}
+    ends = [(i, end) for i, case in enumerate(face.cases) for end, _ in case.ends]
+    return {(i, end): _end(face, stiffness, face.cases[i], end) for i, end in told(ends, progress)}
 
 
 def _end(face: PressedFace, stiffness: FaceStiffness | None, case: Case, end: str) -> FaceSlip:

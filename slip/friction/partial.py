@@ -5,6 +5,7 @@ from __future__ import annotations
 import numpy as np
 
 from slip.base.errors import InputError, NotConverged
+from slip.base.progress import Progress
 from slip.base.records import record
 from slip.base.trace import Trace
 from slip.clamp.stage import Clamp
@@ -75,8 +76,11 @@ class Partial:
     it is quoted at; reason: what the file would have to say, '' when all is there.
     """
 
-    def __init__(self, joint: Joint, clamp: Clamp, pressure: Pressure, slip: Slip) -> None:
+    def __init__(
+        self, joint: Joint, clamp: Clamp, pressure: Pressure, slip: Slip, progress: Progress | None = None
+    ) -> None:
         self._joint, self._clamp, self._pressure, self._slip = joint, clamp, pressure, slip
+        self._progress = progress
         self._kept: dict[tuple[int, str], PartialSlip] = {}
         self.stiffness = face_stiffness(joint)
         self.mean_pressure, self.reason = 0.0, ""
@@ -96,6 +100,8 @@ class Partial:
             return None
         if (case, end) not in self._kept:
             self._kept[case, end] = self._end(case, end)
+            if self._progress is not None:
+                self._progress(len(self._kept), sum(len(one.ends) for one in self._joint.cases))
         return self._kept[case, end]
 
     def _end(self, case: int, end: str) -> PartialSlip:

@@ -411,9 +411,9 @@ KEYS: tuple[Key, ...] = (
     Key("scatter", "correlation", "anything", "between inputs", later=True),
     Key("scatter", "target", "number", "reliability index to be met", later=True),
     Key("table", "units", "choice", "of headers without a unit", choices=("N mm", "lbf in")),
-    Key("table", "columns", "anything", '{ Fx = "FX" }'),
-    Key("table", "axes", "anything", '{ x = "X", y = "-Z", normal = "Y" }'),
-    Key("table", "decimal", "choice", "decimal sign", choices=(".", ",")),
+    Key("table", "columns", "anything", "the table's own names of our columns"),
+    Key("table", "axes", "anything", "axes of the table along x, y and the normal, right-handed", default="X, Y, Z"),
+    Key("table", "decimal", "choice", "decimal sign", choices=(".", ","), default="as detected, which is said"),
 )
 
 BY_TABLE: dict[str, dict[str, Key]] = {name: {k.name: k for k in KEYS if k.table == name} for name in TABLES}

@@ -91,6 +91,8 @@ BOLTED_ONLY = (
 )
 # Commented keys whose kind alone would suggest an absurd value.
 SAMPLES = {
+    "table.columns": '{ Fx = "FX" }',
+    "table.axes": '{ x = "X", y = "-Z", normal = "Y" }',
     "bolt.yield_strength": '"640 MPa"',
     "bolt.tensile_strength": '"800 MPa"',
     "bolt.bearing_diameter": '"17 mm"',

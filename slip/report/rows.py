@@ -22,6 +22,10 @@ SHOWN = 12  # rows of a table that stand open
 NAME, TEXT = 60, 600  # columns of a name and of a sentence that hold what the file gives
 MINUS = "\N{MINUS SIGN}"
 STATES = ("fails", "not solved", "holds")  # in the order of urgency
+LEDGERS = (
+    "What is left to hold the joint: the lowest clamp",
+    "What the bolt and its seat may see: the highest clamp",
+)
 
 
 @record
@@ -104,6 +108,14 @@ def _case_row(checks: Sequence[Check], kind: str, governs: bool) -> Row:
 def ledger_tables(assessment: Assessment, end: End, system: System) -> list[Table]:
     """The lowest clamp and the highest, a row for each bolt."""
     rows = machine.ledger(assessment, end.bolt_states, system)
+    return [
+        _ledger_table(caption, columns, rows, assessment, end)
+        for caption, columns in zip(LEDGERS, ledger_columns(system), strict=True)
+    ]
+
+
+def ledger_columns(system: System) -> tuple[dict[str, str], dict[str, str]]:
+    """Keys of the ledger with their heads, on the way to the lowest clamp and to the highest."""
     force = f"[{system.force}]"
     low = {
         "assembly_low": f"lowest preload {force}",
@@ -123,10 +135,7 @@ def ledger_tables(assessment: Assessment, end: End, system: System) -> list[Tabl
         "yield_use": "use of yield [%]",
         "bearing_pressure_high": f"pressure under the head [{system.pressure}]",
     }
-    return [
-        _ledger_table("What is left to hold the joint: the lowest clamp", low, rows, assessment, end),
-        _ledger_table("What the bolt and its seat may see: the highest clamp", high, rows, assessment, end),
-    ]
+    return low, high
 
 
 def _ledger_table(
@@ -136,13 +145,14 @@ def _ledger_table(
     bolt = assessment.verdict.governing.bolt or assessment.joint.pattern.names[end.bolt]
     made = []
     for row in rows:
-        cells = [plain(row["bolt"], NAME), *(_amount(row, key) for key in used)]
+        cells = [plain(row["bolt"], NAME), *(ledger_cell(row, key) for key in used)]
         made.append(Row(cells, "open" if row["open"] else "", row["bolt"] == bolt))
     heads = ["bolt", *(columns[key] for key in used)]
     return Table(caption, heads, made[:SHOWN], made[SHOWN:])
 
 
-def _amount(row: dict[str, Any], key: str) -> str:
+def ledger_cell(row: dict[str, Any], key: str) -> str:
+    """A value of the ledger as its table shows it."""
     value = row.get(key)
     if value is None:
         return "-"

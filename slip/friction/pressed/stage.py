@@ -6,6 +6,7 @@ from collections.abc import Iterator, Mapping
 
 import numpy as np
 
+from slip.base.progress import Progress, told
 from slip.base.trace import Trace
 from slip.friction import law
 from slip.friction.closed import bodies, whole
@@ -37,10 +38,11 @@ TOLD = {
 }
 
 
-def pressed_slips(c: PressedContact) -> Mapping[tuple[int, str], PressedSlip]:
+def pressed_slips(c: PressedContact, progress: Progress | None = None) -> Mapping[tuple[int, str], PressedSlip]:
     """Partial slip at every end of every case; ends that ask for the same are worked out once."""
     kept: dict[tuple[float, ...], Stepped] = {}
-    return {(i, end): pressed_slip(c, case, end, kept) for i, case in enumerate(c.cases) for end, _ in case.ends}
+    ends = [(i, end) for i, case in enumerate(c.cases) for end, _ in case.ends]
+    return {(i, end): pressed_slip(c, c.cases[i], end, kept) for i, end in told(ends, progress)}
 
 
 def pressed_slip(
