@@ -140,6 +140,7 @@ class _Run:
         self.writer = Output(out, job.how) if out else None
         self.lost = Output(refused, Style("csv"))
         self.checkpoint = Checkpoint(out) if out else None
+        self.seen = Output(out.with_name(f"{out.name}.seen"), Style("csv")) if out else None  # marks of the cases so far
         self.marks = np.empty(0, dtype=np.uint64)
         self.gathering = False
 
@@ -163,8 +164,9 @@ class _Run:
         self.summary, self.marks = Summary(self.summary.bolts), self.marks[:0]
         self.gathering = gathering
         self.lost.begin()
-        if self.writer:
-            self.writer.begin()
+        for file in (self.writer, self.seen):
+            if file:
+                file.begin()
 
     def _work(
         self, start: tuple[int, int], executor: Executor | None, ahead: int, progress: Progress | None, size: int
@@ -194,7 +196,8 @@ class _Run:
                 self.lost.add(",".join(REFUSED).encode() + b"\n")
             self.lost.add(encoded(done.refused, Style("csv")))
         self.summary.add(done.summary)
-        if self.checkpoint and self.writer:
+        if self.checkpoint and self.writer and self.seen:
+            self.seen.add(done.marks.tobytes())
             self.checkpoint.save(
                 {
                     "input": self.job.ready.joint.digest,
@@ -206,7 +209,7 @@ class _Run:
                     "gathering": self.gathering,
                     "out": self.writer.size,
                     "refused": self.lost.size,
-                    "marks": self.marks.tolist(),
+                    "seen": self.seen.size,
                     "summary": self.summary.as_dict(),
                 }
             )
@@ -219,7 +222,7 @@ class _Run:
 
     def _resumed(self) -> tuple[int, int]:
         """Where an interrupted run has to go on: bytes or rows, and the line."""
-        if not (self.checkpoint and self.writer):
+        if not (self.checkpoint and self.writer and self.seen):
             remedy = "name the file that the run wrote to"
             raise Problems(
                 [InputError("resume-without-out", "--resume", "no --out", "the result to go on with", remedy)]
@@ -240,9 +243,10 @@ class _Run:
             )
         self.gathering = state["gathering"]
         self.summary = Summary.from_dict(state["summary"])
-        self.marks = np.array(state["marks"], dtype=np.uint64)
         self.writer.begin(state["out"])
         self.lost.begin(state["refused"])
+        self.seen.begin(state["seen"])
+        self.marks = np.unique(np.fromfile(self.seen.partial, dtype=np.uint64))
         return state["until"], state["line"]
 
     def _kept(self) -> str:
@@ -259,7 +263,8 @@ class _Run:
             self.lost.finish()
         else:
             self.lost.discard()
-        if self.checkpoint:
+        if self.checkpoint and self.seen:
+            self.seen.discard()
             self.checkpoint.remove()
         grown = self.table.grown
         if self.table.parquet:
