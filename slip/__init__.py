@@ -1,6 +1,6 @@
 """Proves that a bolted, friction-clamped joint does not slip, with every number traceable.
 
-`check` walks the whole path from a joint file or a Joint; the formulas lie in slip.clamp, slip.pressure, slip.friction
+`check` walks the whole path from a joint file or a Joint, `check_table` for a table of load cases; the formulas lie in slip.clamp, slip.pressure, slip.friction
 and slip.verdict and take plain numbers.
 """
 
@@ -16,6 +16,8 @@ __version__ = "0.1.0"
 _NAMES = {
     "Assessment": ("slip.assess", "Assessment"),
     "check": ("slip.assess", "assess"),
+    "check_table": ("slip.cases.run", "check_table"),
+    "TableResult": ("slip.cases.run", "TableResult"),
     "Joint": ("slip.joint.joint", "Joint"),
     "read_file": ("slip.read.build", "read"),
     "read_text": ("slip.read.build", "read_text"),

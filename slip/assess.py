@@ -92,6 +92,16 @@ class FaceAssessment:
         """Whether every check that decides holds."""
         return self.verdict.holds
 
+    @property
+    def assumptions(self) -> tuple[Note, ...]:
+        """Every default that was used."""
+        return self.joint.assumptions
+
+    @property
+    def warnings(self) -> tuple[Note, ...]:
+        """What a reader must know."""
+        return self.joint.warnings
+
 
 Subject = Joint | PressedContact | PressedFace
 

@@ -25,7 +25,7 @@ def hints(ready: Prepared, form: Form, summary: Summary, grown: int) -> Iterator
         text = f"bolt forces miss the joint's load by {share:.1%} in {case}, the worst of {summary.balanced} cases compared"
         yield Note("table-unbalanced", text, "table")
     if summary.refused:
-        text = f"{summary.refused} rows were refused; their cases are not judged"
+        text = f"rows refused: {summary.refused}; their cases are not judged"
         yield Note("table-rows-refused", text, "table")
     if grown:
         text = f"the table changed by {grown} bytes while it was read; what came after is not judged"

@@ -164,6 +164,8 @@ class _Run:
         self.summary, self.marks = Summary(self.summary.bolts), self.marks[:0]
         self.gathering = gathering
         self.lost.begin()
+        if self.checkpoint:
+            self.checkpoint.remove()
         for file in (self.writer, self.seen):
             if file:
                 file.begin()

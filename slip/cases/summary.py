@@ -134,7 +134,7 @@ def summed(joint: Joint, form: Form, read: Read, judged: Judged) -> Summary:
     made.worst = _worst(joint, block, judged)
     open_cases = np.flatnonzero(judged.reason != "")
     made.not_judged = [(names[int(i)], str(judged.reason[i])) for i in open_cases[:LISTED]]
-    for reason in [*read.refused["reason"].to_list(), *judged.reason[open_cases].tolist()]:
+    for reason in read.refused["reason"].to_list():
         kind = reason.partition(": ")[0].partition(' "')[0]
         made.reasons[kind] = made.reasons.get(kind, 0) + 1
     judgeable = judged.reason == ""

@@ -60,24 +60,22 @@ class Output:
         """Start anew, or go on behind the first `size` bytes or pieces."""
         self.size = size
         with _told(self.partial):
-            if self.how.kind == "parquet":
-                if not size and self.partial.exists():
-                    shutil.rmtree(self.partial)
-                self.partial.mkdir(exist_ok=True)
+            if not size:
+                self.discard()
+            elif self.how.kind == "parquet":
                 for piece in self.partial.glob("*.parquet"):
                     if int(piece.stem) >= size:
                         piece.unlink()
-            elif size:
+            else:
                 if self.partial.stat().st_size < size:
                     raise OSError("it is shorter than what was written")
                 os.truncate(self.partial, size)
-            else:
-                self.partial.write_bytes(b"")
 
     def add(self, data: bytes) -> None:
         """Write one chunk; all of it or, when that fails, none that counts."""
         with _told(self.partial):
             if self.how.kind == "parquet":
+                self.partial.mkdir(exist_ok=True)
                 (self.partial / f"{self.size:06d}.parquet").write_bytes(data)
                 self.size += 1
             elif data:

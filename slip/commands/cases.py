@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import argparse
 import os
+import signal
 from contextlib import AbstractContextManager, nullcontext
 from pathlib import Path
 from typing import TYPE_CHECKING
@@ -77,7 +78,9 @@ def _executor(workers: int) -> AbstractContextManager[Executor | None]:
     from concurrent.futures import ProcessPoolExecutor
     from multiprocessing import get_context
 
-    return ProcessPoolExecutor(workers, mp_context=get_context("spawn"))
+    # A key press that interrupts reaches all processes; only this one answers it.
+    deaf = signal.SIGINT, signal.SIG_IGN
+    return ProcessPoolExecutor(workers, get_context("spawn"), initializer=signal.signal, initargs=deaf)
 
 
 def _report(found: TableResult, asked: argparse.Namespace) -> None:

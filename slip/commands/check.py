@@ -8,7 +8,6 @@ import os
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from slip.base.errors import InputError, Problems
 from slip.base.progress import Progress
 from slip.commands.outcome import Outcome, report_options, units, write
 
@@ -74,14 +73,10 @@ def _pressed(assessment: PressedAssessment, asked: argparse.Namespace) -> Outcom
 
 def _face(assessment: FaceAssessment, asked: argparse.Namespace) -> Outcome:
     if asked.report:
-        raise not_of_face("--report", asked.file)
+        from slip.report.face_page import face_page
+
+        write(Path(asked.report), face_page(assessment, units(asked)), [Path(asked.file)])
     from slip.report.face import face_json, face_text
 
     said = face_json if asked.json else face_text
     return Outcome(said(assessment, units(asked)), assessment.verdict.exit_code)
-
-
-def not_of_face(what: str, file: str) -> Problems:
-    """The fault of an output that a face of known pressure has not."""
-    remedy = "slip check FILE --json has every number of such a face"
-    return Problems([InputError("face-not-yet", what, "a face of known pressure", "a joint with bolts", remedy, file)])

@@ -6,11 +6,11 @@ import argparse
 from typing import TYPE_CHECKING
 
 from slip.base.progress import Progress
-from slip.commands.check import assessed, not_of_face
+from slip.commands.check import assessed
 from slip.commands.outcome import Outcome
 
 if TYPE_CHECKING:
-    from slip.assess import Assessment, PressedAssessment
+    from slip.assess import Assessment, FaceAssessment, PressedAssessment
 
 
 def options(parser: argparse.ArgumentParser) -> None:
@@ -26,7 +26,7 @@ def run(asked: argparse.Namespace, progress: Progress | None) -> Outcome:
     """The lines behind one case and bolt."""
     assessment = _in_table(asked) if asked.table else assessed(asked.file, progress)
     if assessment.pressed == "face":
-        raise not_of_face("explain", asked.file)
+        return _face(assessment, asked)
     if assessment.pressed:
         return _pressed(assessment, asked)
     from slip.report.equations import explain
@@ -54,3 +54,11 @@ def _pressed(assessment: PressedAssessment, asked: argparse.Namespace) -> Outcom
 
     explanation = explain_pressed(assessment, asked.case, asked.bolt)
     return Outcome(explanation_text(explanation) if asked.json else explain_pressed_text(explanation, assessment))
+
+
+def _face(assessment: FaceAssessment, asked: argparse.Namespace) -> Outcome:
+    from slip.report.face_lines import explain_face, explain_face_text
+    from slip.report.machine import explanation_text
+
+    explanation = explain_face(assessment, asked.case, asked.bolt)
+    return Outcome(explanation_text(explanation) if asked.json else explain_face_text(explanation, assessment))

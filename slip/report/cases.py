@@ -9,6 +9,7 @@ from typing import Any
 
 import slip
 from slip.base.units import System
+from slip.cases.hints import UNBALANCED
 from slip.cases.run import TableResult
 from slip.cases.summary import BINS, ENVELOPE, Worst
 from slip.report.machine import FORMAT, UNITS, friction_entry
@@ -49,31 +50,29 @@ def _lines(
     counts = f"{summary.cases} cases: {summary.codes[HOLDS]} hold, {summary.codes[FAILS]} fail"
     if summary.codes[NOT_SOLVED]:
         counts += f", {summary.codes[NOT_SOLVED]} not judged"
-    yield from _part("table", f"{summary.rows} rows, {counts}; {found.form.said}")
+    yield _part("table", f"{counts}; {summary.rows} rows" + (f", {summary.refused} refused" * bool(summary.refused)))
+    yield _part("read", found.form.said)
     if summary.not_judged:
-        said = "; ".join(f"{plain(case, 20)}: {plain(reason, 50)}" for case, reason in summary.not_judged[:3])
-        more = summary.codes[NOT_SOLVED] - 3
-        yield from _part("open", said + (f"; and {more} more" if more > 0 else ""))
-    if summary.reasons and summary.refused:
-        reasons = ", ".join(f"{plain(reason, 50)} ({count})" for reason, count in list(summary.reasons.items())[:3])
-        yield from _part("refused", f"{summary.refused} rows, in {found.refused}: {reasons}")
+        yield _part("open", _listed([f"{plain(c, 20)}: {plain(r, 40)}" for c, r in summary.not_judged], "; "))
+    if summary.refused:
+        yield _part("refused", _listed([f"{plain(r, 50)} ({n})" for r, n in summary.reasons.items()], ", "))
     near = chosen(summary.worst, cases, bolts)
-    if top is None:
-        said = ", ".join(_short(w) for w in near[:SHOWN])
-        if said:
-            yield from _part("nearest", said)
-    yield from _part("reserves", _spread(found))
+    if near and top is None:
+        yield _part("nearest", _listed([_short(w) for w in near[: SHOWN + 1]], ", "))
+    yield _part("reserves", _spread(found))
     if summary.near_count:
         value, case, bolt = summary.near[0]
-        said = f"{summary.near_count} cases within 1.25 of opening, the nearest {plain(case, 20)}, {bolt} at {factor(value, 1.0)}"
-        yield from _part("apart", said + (f"; {summary.open_cases} with an open bolt" if summary.open_cases else ""))
-    yield from _part("bolts", _extremes(found, system, bolts))
-    if summary.balanced and summary.balance[0] <= 0.02:
-        yield from _part(
-            "balance", f"{summary.balanced} cases add up to the joint's load within {summary.balance[0]:.1%}"
+        count = f"{summary.near_count} near opening" + f", {summary.open_cases} with an open bolt" * bool(
+            summary.open_cases
         )
+        yield _part("apart", f"{count}; nearest {plain(case, 20)}, {bolt} at {factor(value, 1.0)}")
+    yield _part("bolts", _extremes(found, system, bolts))
+    if summary.balanced and summary.balance[0] <= UNBALANCED:
+        yield _part("balance", f"{summary.balanced} cases add up to the joint's load within {summary.balance[0]:.1%}")
     if found.out:
-        yield from _part("written", str(found.out))
+        yield _part("written", str(found.out))
+    if found.refused:
+        yield _part("", f"rows refused: {found.refused}")
     yield from _notes("Assumed", [note.text for note in found.assumptions], 4)
     yield from _notes("Warnings", [note.text for note in found.warnings], 20)
     yield from wrapped(f"Caution: {CAUTION}", WIDTH)
@@ -89,8 +88,20 @@ def _notes(name: str, texts: Sequence[str], most: int) -> Iterator[str]:
         yield from wrapped(f"{name} ({len(said)}): {'; '.join(said[-most:])}{more}", WIDTH)
 
 
-def _part(name: str, text: str) -> list[str]:
-    return wrapped(text, WIDTH, first=f"{name:<9}", later=" " * 9)
+def _part(name: str, text: str) -> str:
+    return f"{name:<9}{text}"
+
+
+def _listed(texts: Sequence[str], between: str) -> str:
+    """As many of the texts as the line holds, with dots for the others."""
+    room, kept = WIDTH - 9, ""
+    for i, text in enumerate(texts):
+        longer = kept + between + text if kept else text
+        more = between + ".." if i < len(texts) - 1 else ""
+        if kept and columns(longer + more) > room:
+            return kept + between + ".."
+        kept = longer
+    return kept
 
 
 def _verdict(found: TableResult) -> Iterator[str]:
@@ -105,6 +116,9 @@ def _verdict(found: TableResult) -> Iterator[str]:
         f"{factor(w.factor, w.required)}, required {w.required:g}" if w.factor is not None else f"reserve {_reserve(w)}"
     )
     place = ", ".join([plain(w.case, 24), f"{w.end} end", *([f"bolt {w.bolt}"] if w.bolt else [])])
+    if found.exit_code == NOT_SOLVED:
+        yield f"{said}: {summary.codes[NOT_SOLVED]} of {summary.cases} cases; of the others the nearest to slip:"
+        said = "  holds"
     yield from wrapped(f"{said}: {check_name(w.check)} {against} ({place})", WIDTH)
     grows = {"all loads": "all loads growing", "shear": "shear growing, clamp held"}[required.grows]
     friction = found.joint.interface.friction_low
@@ -122,14 +136,14 @@ def _short(w: Worst) -> str:
 
 
 def _spread(found: TableResult) -> str:
-    """How many cases lie between which reserves."""
-    edges = ["", *(f"{edge:g}" for edge in BINS), ""]
-    said = []
-    for (low, high), count in zip(zip(edges, edges[1:], strict=False), found.summary.spread, strict=True):
-        if count:
-            name = f"below {high}" if not low else f"{low} and more" if not high else f"{low} to {high}"
-            said.append(f"{name}: {count}")
-    return "; ".join(said) or "none"
+    """How many cases lie between which reserves, in few steps; JSON and the page have all."""
+    edges, counts = (1.0, 1.1, 1.25, 1.5, 2.0), found.summary.spread
+    said, first = [], 0
+    for edge in edges:
+        last = BINS.index(edge) + 1
+        said.append(f"{'below' if not first else 'to'} {edge:g}: {sum(counts[first:last])}")
+        first = last
+    return "; ".join([*said, f"more: {sum(counts[first:])}"])
 
 
 def _extremes(found: TableResult, system: System, bolts: Sequence[str]) -> str:

@@ -11,6 +11,7 @@ from matplotlib.axes import Axes
 from matplotlib.figure import Figure
 from matplotlib.lines import Line2D
 from matplotlib.patches import Patch
+from matplotlib.ticker import MaxNLocator
 
 from slip.base.units import System
 from slip.cases.run import TableResult
@@ -58,7 +59,7 @@ def spread_figure(spread: Sequence[int], ink: Ink = LIGHT) -> Figure:
         axes.invert_yaxis()
         axes.margins(x=0.15)
         axes.set_xlim(left=0)
-        axes.xaxis.get_major_locator().set_params(integer=True, nbins=5)
+        axes.xaxis.set_major_locator(MaxNLocator(nbins=5, integer=True))
         axes.set_xlabel("number of cases")
         axes.set_ylabel("reserve factor")
         _plain_frame(axes, ink)
@@ -120,6 +121,4 @@ def _plain_frame(axes: Axes, ink: Ink) -> None:
 def _mark(kind: int, colour: str) -> Line2D:
     """An entry of the legend."""
     face = colour if kind == 0 else "none"
-    return Line2D(
-        [], [], linestyle="none", marker=MARKERS[kind], color=colour, markerfacecolor=face, label=KINDS[kind]
-    )
+    return Line2D([], [], linestyle="none", marker=MARKERS[kind], color=colour, markerfacecolor=face, label=KINDS[kind])

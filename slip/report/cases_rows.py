@@ -17,11 +17,12 @@ HEADS = {"open": "open", "holds": "holds", "case_holds": "case holds"}
 
 
 def result_rows(path: Path, how: Style) -> tuple[Table, int]:
-    """The first rows of a result as a table, and how many it has in all. Raises OSError or a polars error where it cannot be read."""
-    if how.kind == "parquet":
-        scan = pl.scan_parquet(path)
-    else:
-        scan = pl.scan_csv(path, separator=how.separator, infer_schema=False)
+    """The first rows of a result as a table, and how many it has in all.
+
+    Raises OSError, or an error of polars, where it cannot be read.
+    """
+    parquet = how.kind == "parquet"
+    scan = pl.scan_parquet(path) if parquet else pl.scan_csv(path, separator=how.separator, infer_schema=False)
     total = int(scan.select(pl.len()).collect().item())
     frame = scan.head(MOST).collect().cast(pl.String)
     heads = [_head(name) for name in frame.columns]

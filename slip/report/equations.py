@@ -8,7 +8,7 @@ from typing import Any
 
 import numpy as np
 
-from slip.assess import Assessment, PressedAssessment
+from slip.assess import Assessment, FaceAssessment, PressedAssessment
 from slip.base.errors import InputError, Problems
 from slip.base.records import record
 from slip.base.tables import Row, table
@@ -74,7 +74,7 @@ def explain(assessment: Assessment, case: str | None = None, bolt: str | None = 
     return Explanation(case, end.end, joint.pattern.names[shown], tuple(_lines(assessment, end, shown)))
 
 
-def find(assessment: Assessment | PressedAssessment, what: str, name: str, names: list[str]) -> int:
+def find(assessment: Assessment | PressedAssessment | FaceAssessment, what: str, name: str, names: list[str]) -> int:
     """Place of a name among those of a case or bolt; raises Problems for another, with the names that are known."""
     if name in names:
         return names.index(name)

@@ -5,7 +5,7 @@ from __future__ import annotations
 import textwrap
 from collections.abc import Sequence
 
-from slip.assess import Assessment, PressedAssessment
+from slip.assess import Assessment, FaceAssessment, PressedAssessment
 from slip.base.formulas import citation
 from slip.report.checked import WIDTH
 from slip.report.equations import Explanation
@@ -20,7 +20,9 @@ def explain_text(explanation: Explanation, assessment: Assessment) -> str:
     return told(head, explanation, assessment)
 
 
-def told(head: Sequence[str], explanation: Explanation, assessment: Assessment | PressedAssessment) -> str:
+def told(
+    head: Sequence[str], explanation: Explanation, assessment: Assessment | PressedAssessment | FaceAssessment
+) -> str:
     """The first lines, then every number as a block, assumptions, warnings and citations."""
     lines, system = list(head), assessment.joint.system
     if system.name != "N mm":

@@ -9,7 +9,8 @@ from typing import Any
 import slip
 from slip.assess import FaceAssessment
 from slip.base.units import System
-from slip.friction.known_pressure import ClosedLap, FaceSlip
+from slip.friction.even_lap import ClosedLap
+from slip.friction.known_pressure import FaceSlip
 from slip.friction.partial import NO_SHEAR
 from slip.report.machine import FORMAT, UNITS, check_entry, friction_entry, governing_entry, slip_answer
 from slip.report.partial import KINDS, partial_entry, said_of, short
@@ -64,7 +65,7 @@ def _case(assessment: FaceAssessment, i: int, system: System) -> dict[str, Any]:
         if found.partial is not None:
             entry["partial_slip"] = partial_entry(found.partial, system)
             if found.closed is not None:
-                entry["partial_slip"]["closed_form"] = _closed(found.closed, system)
+                entry["partial_slip"]["closed_form"] = closed_values(found.closed, system)
         ends.append(entry)
     return {"name": case.name, "kind": "alternating" if case.alternating else "static", "ends": ends}
 
@@ -80,7 +81,8 @@ def _gross(assessment: FaceAssessment, case: str, end: str) -> dict[str, Any]:
     }
 
 
-def _closed(closed: ClosedLap, system: System) -> dict[str, float]:
+def closed_values(closed: ClosedLap, system: System) -> dict[str, float]:
+    """What the closed form tells, in the reader's units, by its key in the JSON."""
     values = {name: getattr(closed, name) for name in CLOSED}
     return {name: system.out(value, KINDS[name]) for name, value in values.items() if value is not None}
 
@@ -90,11 +92,18 @@ def face_text(assessment: FaceAssessment, units: System | None = None) -> str:
     return "\n".join(_lines(assessment, units or assessment.joint.system)) + "\n"
 
 
-def _lines(assessment: FaceAssessment, system: System) -> Iterator[str]:
-    face, verdict = assessment.joint, assessment.verdict
-    yield from wrapped(f"{WORDS.get(verdict.exit_code, 'NOT SOLVED')}: {_against(assessment)}", WIDTH)
+def verdict_lines(assessment: FaceAssessment, system: System) -> Iterator[str]:
+    """What governs, against what, where; at which friction and force."""
+    face, g = assessment.joint, assessment.verdict.governing
+    word, place = WORDS.get(assessment.verdict.exit_code, "NOT SOLVED"), f"({plain(g.case, 30)}, {g.end} end)"
+    yield from wrapped(f"{word}: {sentence(assessment)} {place}", WIDTH)
     pressed = f"{short(system.out(face.force, 'force'))} {system.force} on each face"
     yield from wrapped(f"at lowest friction {face.interface.friction_low:g}, {pressed}", WIDTH, first="  ")
+
+
+def _lines(assessment: FaceAssessment, system: System) -> Iterator[str]:
+    face = assessment.joint
+    yield from verdict_lines(assessment, system)
     yield f"-- {plain(face.title or face.file, WIDTH - 8)} ".ljust(WIDTH, "-")
     for name, said in _ends(assessment, system):
         yield from wrapped(f"{name}: {said[0]}", WIDTH)
@@ -126,15 +135,15 @@ def _ends(assessment: FaceAssessment, system: System) -> Iterator[tuple[str, lis
             yield from ((f"{name}, {end} end", text) for end, text in texts)
 
 
-def _against(assessment: FaceAssessment) -> str:
-    """The governing check, what it is held against, and where."""
+def sentence(assessment: FaceAssessment) -> str:
+    """The governing check and what it is held against."""
     g = assessment.verdict.governing
     said = check_name(g.check)
     if g.required is not None and g.load_factor is not None and g.load_factor < float("inf"):
         said = f"the face slips wholly at {factor(g.load_factor, g.required)} times the load, required {g.required:g}"
     elif g.reason:
         said += f": {g.reason}"
-    return f"{said} ({plain(g.case, 30)}, {g.end} end)"
+    return said
 
 
 def _factors(found: FaceSlip) -> str:
@@ -151,7 +160,7 @@ def _closed_said(found: FaceSlip, system: System) -> str:
     if found.closed is None:
         return ""
     small, unit = (1e3, "um") if system.length == "mm" else (1e6, "uin")
-    values = _closed(found.closed, system)
+    values = closed_values(found.closed, system)
     parts = [f"from {short(values['first_slip_load'])} {system.force}"]
     parts += [f"{name} {short(small * values[f'{name}_slip'])} {unit}" for name in ("elastic", "true")]
     if "energy_per_cycle" in values:

@@ -11,7 +11,7 @@ import numpy as np
 from jinja2 import Environment, FileSystemLoader, StrictUndefined
 
 import slip
-from slip.assess import Assessment, PressedAssessment
+from slip.assess import Assessment, FaceAssessment, PressedAssessment
 from slip.base.formulas import citation
 from slip.base.notes import Note
 from slip.base.units import SI, System
@@ -85,7 +85,7 @@ def _place(assessment: Assessment, end: End) -> str:
     return f"{plain(assessment.joint.cases[end.case].name, NAME)}, {end.end} end"
 
 
-def page_stamp(assessment: Assessment | PressedAssessment, system: System) -> list[tuple[str, str]]:
+def page_stamp(assessment: Assessment | PressedAssessment | FaceAssessment, system: System) -> list[tuple[str, str]]:
     """Names and values of the page's head: file, digest, program, units."""
     own = assessment.joint.system
     units = ", ".join(dict.fromkeys(system.unit(kind) for kind in ("force", "length", "pressure", "moment")))

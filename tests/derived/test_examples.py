@@ -5,7 +5,7 @@ Table values (bearing faces, holes, moduli, embedding lengths, scatter) are type
 
 from __future__ import annotations
 
-from math import cos, hypot, log, pi, tanh
+from math import cos, hypot, log, pi, sin, tanh
 from pathlib import Path
 from typing import Any
 
@@ -15,10 +15,13 @@ from scipy.integrate import quad
 from scipy.optimize import brentq, minimize_scalar
 
 from slip.assess import Assessment, assess
+from slip.cases.run import check_table
+from slip.report.cases import cases_result
 from slip.report.face import face_result
 from slip.report.machine import result
 
 EXAMPLES = Path(__file__).parents[2] / "examples"
+NAMES = {"bars", "bracket", "jib", "lever", "pad", "splice", "tray"}
 STEEL, IRON, ALUMINIUM = 206e3, 110e3, 71e3  # MPa, typical
 
 
@@ -28,7 +31,7 @@ def example(name: str) -> tuple[Assessment, dict[str, Any]]:
 
 
 def test_every_example_is_here() -> None:
-    assert {path.stem for path in EXAMPLES.glob("*.toml")} == {"bars", "bracket", "lever", "pad", "splice", "tray"}
+    assert {path.stem for path in EXAMPLES.glob("*.toml")} == NAMES
 
 
 def circle(d: float) -> float:
@@ -231,6 +234,35 @@ def test_pad(run_check: Any) -> None:
     assert closed["energy_per_cycle"] == pytest.approx(loop)
     for key in ("displacement", "stiffness", "stick_ratio", "energy_per_cycle"):
         assert stepped[key] == pytest.approx(closed[key], rel=0.015), key
+
+
+def test_jib() -> None:
+    """30 situations in a table: slewing at 252 degrees, B3 holds 1.785 of the 1.8 required; the model gives a fifth of the pull.
+
+    The row of the table by statics of a rigid flange; then the factor by the clamp that is left.
+    """
+    lifted, arm, own_mass, own_arm, n, radius = 1.2, 3.0, 1.1, 0.9, 8, 180.0  # t, m, and mm
+    weight, tilting = 9810 * (own_mass + lifted), 9.81e6 * (own_mass * own_arm + lifted * arm)
+    drive = 0.05 * 9810 * lifted + 400
+    jib, place = pi * 252 / 180, pi / 2  # B3 stands on the second axis of the flange
+    pull = -weight / n - 2 * tilting / (n * radius) * cos(place - jib)
+    along = -drive * sin(jib) / n - drive * arm * 1e3 / (n * radius)
+    across = drive * cos(jib) / n
+    (row,) = (r for r in (EXAMPLES / "jib.csv").read_text(encoding="utf-8").splitlines() if r.startswith("slew 252;B3;"))
+    typed = [1e3 * float(cell.replace(",", ".")) for cell in row.split(";")[2:5]]
+    assert typed == pytest.approx([along, -across, 0.2 * pull], abs=5.01)  # the table has two decimals of a kN
+
+    clamp = 115000 - 6000 - 0.05 * 115000
+    factor = 0.2 * clamp / (hypot(typed[0], typed[1]) + 0.2 * (1 - 0.15) * typed[2] / 0.2)
+    found = cases_result(check_table(EXAMPLES / "jib.toml", EXAMPLES / "jib.csv"))
+    governing = found["governing"]
+    assert (governing["case"], governing["end"], governing["bolt"]) == ("slew 252", "given", "B3")
+    assert governing["factor"] == pytest.approx(factor, rel=1e-12)
+    assert round(factor, 3) == 1.785 and governing["required"] == 1.8
+    assert found["cases"] == {"all": 30, "hold": 29, "fail": 1, "not_judged": 0} and not found["holds"]
+    # the change taken for the pull itself would hide the failure
+    wrong = 0.2 * clamp / (hypot(typed[0], typed[1]) + 0.2 * (1 - 0.15) * typed[2])
+    assert wrong > 2.5 * factor
 
 
 @pytest.mark.parametrize("name", ["bracket", "lever", "splice", "tray"])

@@ -15,15 +15,17 @@ import pytest
 import slip
 
 ROOT = Path(__file__).resolve().parents[2]
+# Joint files with load cases of their own.
+JOINTS = [p for p in sorted((ROOT / "examples").glob("*.toml")) if "[[case]]" in p.read_text(encoding="utf-8")]
 pytestmark = pytest.mark.slow
 BINARIES = "Scripts" if os.name == "nt" else "bin"
 
 
-def tool(*command: str, cwd: Path) -> subprocess.CompletedProcess:
+def tool(*command: str, cwd: Path, code: int = 0) -> subprocess.CompletedProcess:
     """Run a command without this process's Python settings; its output in the fault when it fails."""
     environment = {key: value for key, value in os.environ.items() if not key.startswith("PYTHON")}
     done = subprocess.run(command, cwd=cwd, capture_output=True, text=True, env=environment, check=False)
-    assert done.returncode == 0, f"{' '.join(command)}\n{done.stdout}\n{done.stderr}"
+    assert done.returncode == code, f"{' '.join(command)}\n{done.stdout}\n{done.stderr}"
     return done
 
 
@@ -49,8 +51,8 @@ def binaries(wheel, tmp_path_factory) -> Path:
     return home / BINARIES
 
 
-def command(binaries: Path, *arguments: str, cwd: Path) -> subprocess.CompletedProcess:
-    return tool(str(binaries / "slip"), *arguments, cwd=cwd)
+def command(binaries: Path, *arguments: str, cwd: Path, code: int = 0) -> subprocess.CompletedProcess:
+    return tool(str(binaries / "slip"), *arguments, cwd=cwd, code=code)
 
 
 def test_the_wheel_holds_data_and_templates_and_no_tests(wheel):
@@ -75,13 +77,22 @@ def test_it_comes_from_the_wheel(binaries, tmp_path):
     assert "site-packages" in where and str(ROOT / "slip") not in where
 
 
-@pytest.mark.parametrize("example", sorted(path.name for path in (ROOT / "examples").glob("*.toml")))
+@pytest.mark.parametrize("example", [path.name for path in JOINTS])
 def test_an_example_far_from_the_source(binaries, tmp_path, example):
     shutil.copy(ROOT / "examples" / example, tmp_path)
     said = command(binaries, "check", example, cwd=tmp_path).stdout
     assert said == (ROOT / "tests/shown/golden" / example.replace(".toml", ".txt")).read_text(encoding="utf-8")
     found = json.loads(command(binaries, "check", example, "--json", cwd=tmp_path).stdout)
     assert found["holds"] is True and found["tool"]["version"] == slip.__version__
+
+
+def test_a_table_far_from_the_source(binaries, tmp_path):
+    for name in ("jib.toml", "jib.csv"):
+        shutil.copy(ROOT / "examples" / name, tmp_path)
+    options = ("--out", "out.parquet", "--report", "page.html", "--json")
+    found = json.loads(command(binaries, "cases", "jib.toml", "jib.csv", *options, cwd=tmp_path, code=1).stdout)
+    assert found["cases"] == {"all": 30, "hold": 29, "fail": 1, "not_judged": 0}
+    assert {path.name for path in tmp_path.iterdir()} == {"jib.toml", "jib.csv", "out.parquet", "page.html"}
 
 
 def test_the_page_is_written(binaries, tmp_path):

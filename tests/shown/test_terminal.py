@@ -13,7 +13,6 @@ from slip.cli import COMMANDS, main
 from slip.report.words import columns
 
 ROOT = Path(__file__).resolve().parents[2]
-EXAMPLES = sorted(path.stem for path in (ROOT / "examples").glob("*.toml"))
 WIDTH, HEIGHT = 80, 24
 
 
@@ -25,6 +24,7 @@ def _maker():
 
 
 MAKER = _maker()
+EXAMPLES = [path.stem for path in MAKER.EXAMPLES]
 
 
 def golden(name: str) -> str:

@@ -7,7 +7,8 @@ interface without compliance (rigid stick). Bending and the shear through the th
 taken into k (thickness_compliance). D = 1/EA_1 + 1/EA_2, decay omega = sqrt(k D).
 
 Each formula has the length that slips or sticks as argument; `slip_lengths` finds it. Everything broadcasts and is odd
-in P, energies and lengths even. ValueError where |P| reaches q_l L: the joint slips wholly.
+in P, energies and lengths even. ValueError where |P| reaches q_l L: the joint slips wholly. The texts take exp(-omega L)
+in place of hyperbolic sines, which would overflow on a long lap.
 """
 
 from __future__ import annotations
@@ -58,7 +59,7 @@ def decay(k: Value, D: Value) -> Value:
 
 @formula(
     "C_0",
-    "(1/(EA_1 + EA_2))*(L + 2/(omega*sinh(omega*L)) + (EA_2/EA_1 + EA_1/EA_2)*cosh(omega*L)/(omega*sinh(omega*L)))",
+    "(L + (EA_2/EA_1 + EA_1/EA_2)/(omega*tanh(omega*L)) + 4*exp(-omega*L)/(omega*(1 - exp(-2*omega*L))))/(EA_1 + EA_2)",
     unit="mm/N",
     **LAG,
     valid="stuck all over; omega = sqrt(k D)",
@@ -95,7 +96,7 @@ def interface_share(EA_1: Value, EA_2: Value, k: Value, L: Value) -> Value:
 
 @formula(
     "P_on",
-    "q_l*omega*sinh(omega*L)/(k*max(1/EA_1 + cosh(omega*L)/EA_2, cosh(omega*L)/EA_1 + 1/EA_2))",
+    "q_l*omega/(k*(1/(min(EA_1, EA_2)*tanh(omega*L)) + 2*exp(-omega*L)/(max(EA_1, EA_2)*(1 - exp(-2*omega*L)))))",
     unit="N",
     **LAG,
     valid="omega = sqrt(k D)",
@@ -104,6 +105,12 @@ def onset(q_l: Value, k: Value, EA_1: Value, EA_2: Value, omega: Value, L: Value
     """Force [N] at which the first end slips, the softer strip's; k finite (volkersen1938 and statics, derived)."""
     g_0, g_L = _edge_motions(1 / EA_2, 1 / EA_1, omega, L)
     return q_l / (k * np.maximum(g_0, g_L))
+
+
+@formula("q", "P/P_on*q_l", unit="N/mm", **LAG, valid="stuck all over, P <= P_on")
+def end_flow(P: Value, P_on: Value, q_l: Value) -> Value:
+    """Shear flow [N/mm] at the end that slips first, before it does: in proportion to the pull (statics, derived)."""
+    return P / P_on * q_l
 
 
 @formula("P_on", "2*q_l/omega*tanh(omega*L/2)", unit="N", **LAG, valid="equal strips")
@@ -132,7 +139,8 @@ def end_slip_length(P: Value, EA: Value, D: Value, q_l: Value, c: Value, omega: 
 
 @formula(
     "P",
-    "q_l*(1/EA_a + 1/EA_b)*(tanh(omega*(L - a))/omega + a)/(1/EA_a + 1/(EA_b*cosh(omega*(L - a))))",
+    "q_l*(1/EA_a + 1/EA_b)*(tanh(omega*(L - a))/omega + a)"
+    "/(1/EA_a + 2*exp(-omega*(L - a))/(EA_b*(1 + exp(-2*omega*(L - a)))))",
     unit="N",
     **SLIPPING,
     valid="only the pulled end of strip a slips",
