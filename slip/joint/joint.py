@@ -8,6 +8,7 @@ from slip.base.notes import Note
 from slip.base.records import record
 from slip.base.units import System
 from slip.joint.bolt import Bolt
+from slip.joint.elements import Elements
 from slip.joint.loads import Case
 from slip.joint.pattern import Pattern
 from slip.joint.plates import Plate
@@ -70,6 +71,7 @@ class Joint:
     standards: tuple[Standard, ...]
     cases: tuple[Case, ...]
     table: TableForm
+    elements: Elements
     loosening_limit: bool
     assumptions: tuple[Note, ...]
     warnings: tuple[Note, ...]

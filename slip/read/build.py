@@ -12,6 +12,7 @@ from slip.joint.joint import Joint, Standard
 from slip.read import assembly, hardware, loading
 from slip.read.demands import interface, required
 from slip.read.document import Document, load, parse
+from slip.read.elements import elements
 from slip.read.face import describes_face
 from slip.read.face import face as pressed_face
 from slip.read.pattern import pattern
@@ -34,7 +35,7 @@ STANDARD_DEFAULTS = {
     },
 }
 # Tables of keys that are checked, not used yet.
-LATER = ("finite_elements", "fretting", "loosening", "scatter")
+LATER = ("fretting", "loosening", "scatter")
 
 
 def read(path: str | Path, cases_in_table: bool = False) -> Joint | PressedContact | PressedFace:
@@ -73,6 +74,7 @@ def build(document: Document, cases_in_table: bool = False) -> Joint | PressedCo
     cases = r.attempt(lambda: loading.cases(r, layout, cases_in_table))
     axial = r.attempt(lambda: loading.axial(r, one(r, "axial"), plates, bolt, cases, cases_in_table))
     form = r.attempt(lambda: table(r, one(r, "table")))
+    mesh = r.attempt(lambda: elements(r, one(r, "finite_elements")))
     standards = r.attempt(lambda: _standards(r))
     if face and plates and face.parallel_faces > len(plates) - 1:
         found, most = f"{face.parallel_faces} faces between {len(plates)} plates", f"at most {len(plates) - 1}"
@@ -101,6 +103,7 @@ def build(document: Document, cases_in_table: bool = False) -> Joint | PressedCo
         standards=_there(standards),
         cases=_there(cases),
         table=_there(form),
+        elements=_there(mesh),
         loosening_limit=bool(document.tree.get("loosening", {}).get("limit", False)),
         assumptions=tuple(r.assumptions),
         warnings=tuple(r.warnings),

@@ -14,6 +14,7 @@ import pytest
 from slip import cli
 from slip.assess import assess
 from slip.base.errors import InputError, Problems
+from slip.commands import tables
 from slip.read.build import read, read_text
 
 GOOD = """\
@@ -926,7 +927,7 @@ def test_a_word_that_no_table_holds() -> None:
     assert (done.returncode, done.stdout) == (2, "")
     assert done.stderr.count("\n") == 1 and "slip tables lists the tables" in done.stderr
     with pytest.raises(Problems) as caught:
-        cli._tables(argparse.Namespace(word="zzzzz"))
+        tables.run(argparse.Namespace(word="zzzzz"), None)
     assert caught.value.errors[0].code == "no-row"
 
 
