@@ -131,7 +131,7 @@ def under(model: Model, friction: float, one: End, other: End, gross: float, alt
     else:
         try:
             readings = tuple(
-                _motions(model, friction, reading, one, other, alternating) for reading in (LOW, TYPICAL, HIGH)
+                motions_of(model, friction, reading, one, other, alternating) for reading in (LOW, TYPICAL, HIGH)
             )
         except (NotConverged, InputError) as error:  # the latter where the model's cells are too few for the face
             reason = str(error)
@@ -163,7 +163,7 @@ def _said(model: Model, found: Motions) -> None:
     model.trace.total("motion of the faces there, elastic and true slip", "g", both, "mm", "step", model.basis)
 
 
-def _motions(model: Model, friction: float, reading: int, one: End, other: End, alternating: bool) -> Motions:
+def motions_of(model: Model, friction: float, reading: int, one: End, other: End, alternating: bool) -> Motions:
     """One reading of the stiffness: the stuck answer, the load put on once, and a steady cycle."""
     load, held = one
     built = model.build(np.maximum(held, other[1]), reading)

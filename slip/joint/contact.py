@@ -7,6 +7,7 @@ import math
 from slip.base.notes import Note
 from slip.base.records import record
 from slip.base.units import System
+from slip.joint.elements import Elements
 from slip.joint.joint import Required
 from slip.joint.loads import Case
 from slip.joint.material import Material
@@ -57,6 +58,7 @@ class PressedFace:
     interface: Interface
     required: Required
     cases: tuple[Case, ...]
+    elements: Elements
     assumptions: tuple[Note, ...]
     warnings: tuple[Note, ...]
     digest: str

@@ -11,6 +11,7 @@ from slip.joint.surface import Interface
 from slip.read import hardware, loading
 from slip.read.demands import interface, required
 from slip.read.document import Document
+from slip.read.elements import elements
 from slip.read.reader import Reader, Stop
 from slip.read.sections import one
 
@@ -35,8 +36,9 @@ def face(r: Reader, document: Document) -> PressedFace:
     overlap = r.attempt(partial(_overlap, r, plates, surface))
     demands = r.attempt(lambda: required(r, one(r, "required")))
     cases = r.attempt(partial(_cases, r))
+    mesh = r.attempt(lambda: elements(r, one(r, "finite_elements")))
     r.finish()
-    assert plates and surface and overlap and demands and cases
+    assert plates and surface and overlap and demands and cases and mesh
     return PressedFace(
         title=document.tree.get("title", ""),
         system=r.system,
@@ -45,6 +47,7 @@ def face(r: Reader, document: Document) -> PressedFace:
         interface=surface,
         required=demands,
         cases=cases,
+        elements=mesh,
         assumptions=tuple(r.assumptions),
         warnings=tuple(r.warnings),
         digest=document.digest,
