@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from dataclasses import replace
+from typing import TypeVar
 
 import numpy as np
 
@@ -13,8 +15,11 @@ from slip.friction.faces import Faced, FaceStiffness, face_stiffness, plate_shea
 from slip.friction.model import Model
 from slip.friction.models import choose, choose_face
 from slip.friction.partial import End
+from slip.joint.contact import PressedFace
+from slip.joint.joint import Joint
 
 Array = np.ndarray
+J = TypeVar("J", Joint, PressedFace)
 SLIPPING = 0.5  # part of gross slip at which a face is judged whose own load is beyond it, or that has no load
 
 
@@ -67,8 +72,11 @@ def constant(k_t: float) -> FaceStiffness:
 
 
 def of_joint(found: Assessment) -> Subject | None:
-    """The governing end of a bolted joint; None where its contact cannot be worked out."""
-    joint, states, ledger = found.joint, found.clamp.states, found.clamp.ledger
+    """The governing end of a bolted joint; None where its contact cannot be worked out.
+
+    The plates always shear through their thickness here, whatever the file says: a mesh of solid elements holds that already.
+    """
+    joint, states, ledger = _sheared(found.joint), found.clamp.states, found.clamp.ledger
     patch = found.pressure.patch
     if patch is None:
         return None
@@ -107,8 +115,8 @@ def of_joint(found: Assessment) -> Subject | None:
 
 
 def of_face(found: FaceAssessment) -> Subject | None:
-    """The governing end of a face of known pressure."""
-    face, governing = found.joint, found.verdict.governing
+    """The governing end of a face of known pressure, as `of_joint`."""
+    face, governing = _sheared(found.joint), found.verdict.governing
     named = {(face.cases[i].name, end): slip for (i, end), slip in found.slips.items()}
     slip = named.get((governing.case, governing.end)) or next(iter(named.values()))
     if not slip.load.any():
@@ -136,6 +144,10 @@ def of_face(found: FaceAssessment) -> Subject | None:
         width=face.width,
         reason=reason,
     )
+
+
+def _sheared(joint: J) -> J:
+    return replace(joint, interface=replace(joint.interface, plate_shear=True))
 
 
 def _loaded(load: Array, gross: float) -> tuple[Array, float, str]:

@@ -17,7 +17,7 @@ from slip.base.records import record
 from slip.friction.faces import FaceStiffness
 from slip.friction.march.load import SlipsWholly
 from slip.friction.march.step import step
-from slip.friction.model import Model
+from slip.friction.model import Built, Model
 from slip.friction.partial import STUCK, TYPICAL, Motions, motions_of
 from slip.stiffness.subject import Subject, constant
 
@@ -32,22 +32,28 @@ NOTHING = 1e-12  # below this part of what the contact can do a quantity is none
 
 @record(eq=False)
 class Response:
-    """What the joint does at one contact stiffness: the motions, and the part of the load that each bolt's patch carries."""
+    """What the joint does at one contact stiffness: the motions, and the part of the load that each bolt's patch carries.
+
+    grain: share of the clamp on the largest point of the model, by which a slip length is known.
+    """
 
     motions: Motions
     shares: Array
+    grain: float
 
     def value(self, quantity: str) -> float | None:
-        """A quantity by its name; None where the model has none."""
+        """A quantity by its name; None where the model has none. Of the stiffness the motion that it stands for: 1/K [mm/N], whose
+        error is that of the motion under a low load."""
         m = self.motions
-        return {
-            "stiffness": m.stiffness,
+        found = {
+            "stiffness": 1 / m.stiffness if m.stiffness else None,
             "first slip": m.first_slip_factor,
             "slip length": m.slip_share,
             "true slip": m.true_slip,
             "energy": m.energy_per_cycle,
             "load sharing": float(self.shares.max()) if self.shares.size > 1 else None,
-        }[quantity]
+        }
+        return found[quantity]
 
 
 @record(eq=False)
@@ -71,15 +77,16 @@ def response(subject: Subject, stiffness: FaceStiffness) -> Response:
     """The joint's response with a contact of this stiffness. Raises NotConverged or InputError where the model cannot be solved."""
     model = subject.model(stiffness)
     found = motions_of(model, subject.friction, TYPICAL, subject.one, subject.other, subject.alternating)
-    return Response(found, _shares(model, subject))
+    clamp = subject.one[1]
+    built = model.build(clamp, TYPICAL)
+    pressed = built.press(clamp) * built.compliance.area
+    shares = np.ones(1) if clamp.size < 2 else _shares(model, built, subject)
+    return Response(found, shares, float(pressed.max() / pressed.sum()))
 
 
-def _shares(model: Model, subject: Subject) -> Array:
+def _shares(model: Model, built: Built, subject: Subject) -> Array:
     """Part of the stuck load that the contact round each bolt carries along it, (n,); a point belongs to bolts as they press on it."""
     load, clamp = subject.one
-    if clamp.size < 2:
-        return np.ones(1)
-    built = model.build(clamp, TYPICAL)
     pressure = built.press(clamp)
     wanted = model.load(load)
     bound = np.where(pressure > 0, STUCK * pressure.max(), 0.0)
@@ -127,23 +134,25 @@ def window(purpose: str, k: Array, responses: Sequence[Response | None], referen
     """Errors of a sweep against a reference, and the bounds of the values that serve."""
     solved = [i for i, r in enumerate(responses) if r is not None]
     k, kept = k[solved], tuple(r for r in responses if r is not None)
-    errors = {name: np.array([_error(r.value(name), reference.value(name)) for r in kept]) for name in QUANTITIES}
+    errors = {name: np.array([error(r, reference, name) for r in kept]) for name in QUANTITIES}
     return Window(
         purpose,
         k,
         kept,
         reference,
         errors,
-        {name: {level: lowest(k, error, level) for level in LEVELS} for name, error in errors.items()},
-        {name: {level: highest(k, error, level) for level in LEVELS} for name, error in errors.items()},
+        {name: {level: lowest(k, e, level) for level in LEVELS} for name, e in errors.items()},
+        {name: {level: highest(k, e, level) for level in LEVELS} for name, e in errors.items()},
     )
 
 
-def _error(value: float | None, reference: float | None) -> float:
-    """Relative error; NaN where there is nothing to compare."""
-    if value is None or reference is None or not np.isfinite(reference) or abs(reference) <= NOTHING:
+def error(found: Response, reference: Response, quantity: str) -> float:
+    """Relative error of a quantity; NaN where there is nothing to compare. A slip length is known to a point of the model."""
+    value, wanted = found.value(quantity), reference.value(quantity)
+    if value is None or wanted is None or not np.isfinite(wanted) or abs(wanted) <= NOTHING:
         return float("nan")
-    return abs(value - reference) / abs(reference)
+    unknown = max(found.grain, reference.grain) if quantity == "slip length" else 0.0
+    return (abs(value - wanted) + unknown) / abs(wanted)
 
 
 def lowest(k: Array, error: Array, level: float) -> float | None:
