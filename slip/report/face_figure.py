@@ -21,6 +21,7 @@ Array = np.ndarray
 ROOM, FAR = 0.4, 2.5  # of the overlap's size: room round it; plates up to this size are shown whole
 ARROW, TURN = 0.3, 0.2  # of the overlap's size: length of the arrow, radius of the arc of a moment
 ALONG_HEIGHT = 4.2  # inches
+NO_SLIP = 1e-3  # mm: height of the axis where nothing slips
 MARKS = 40  # of the step's values that are shown, about
 Handles = list[Line2D | Patch]
 
@@ -54,11 +55,9 @@ def _box(outline: plates.Rectangle | plates.Ring | None) -> Array:
 
 def _view(face: PressedFace, box: Array, at: Array, size: float, unit: float) -> tuple[Array, Array]:
     """Room for the overlap and the load; plates that are much larger are cut off."""
-    corners = [box, box.mean(axis=0) + ROOM * size * np.array([[-1, -1], [1, 1]])]
-    corners += [np.stack([at - ARROW * size, at + ARROW * size])]
+    corners = [box + ROOM * size * np.array([[-1], [1]]), np.stack([at - ARROW * size, at + ARROW * size])]
     boxes = [_box(plate.outline) * unit for plate in face.plates]
     corners += [one for one in boxes if float(np.ptp(one, axis=0).max()) <= FAR * size]
-    corners += [np.stack([box[0] - ROOM * size, box[1] + ROOM * size])] if len(corners) < 3 + len(boxes) else []
     whole = np.concatenate(corners)
     edge = 0.05 * size
     return whole.min(axis=0) - edge, whole.max(axis=0) + edge
@@ -158,7 +157,8 @@ def along_figure(curves: Curves, system: System, ink: Ink = LIGHT) -> Figure:
         above.set_ylabel(f"traction in {system.pressure}")
         below.plot(x, curves.slip * length, color=ink.shear, linewidth=1.8)
         below.plot(x_step, curves.slip_step[few] * length, color=ink.weakest, **style)
-        below.set_ylim(bottom=0.0)
+        most = float(max(curves.slip.max(), curves.slip_step.max()))
+        below.set_ylim(0.0, 1.1 * (most or NO_SLIP) * length)
         below.set_ylabel(f"true slip in {system.length}")
         below.set_xlabel(f"{'xy'[curves.axis]} along the overlap in {system.length}")
         for axes in (above, below):

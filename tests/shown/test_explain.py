@@ -11,6 +11,7 @@ import pytest
 from slip.assess import assess
 from slip.base.units import SI
 from slip.report.equations import explain
+from slip.report.face_lines import explain_face
 from slip.report.machine import result
 from slip.report.terminal import check_text
 
@@ -18,6 +19,7 @@ ROOT = Path(__file__).resolve().parents[2]
 JOINTS = (path for path in (ROOT / "examples").glob("*.toml") if "[[case]]" in path.read_text(encoding="utf-8"))
 EXAMPLES = sorted(path.stem for path in JOINTS if "[bolt]" in path.read_text(encoding="utf-8"))
 CALLS = {name: getattr(math, name) for name in ("sqrt", "exp", "cos", "sin", "tan", "hypot")}
+CALLS |= {name: getattr(math, name) for name in ("sinh", "cosh", "tanh")}
 CALLS |= {"ln": math.log, "abs": abs, "min": min, "max": max}
 
 
@@ -90,6 +92,12 @@ def test_every_line_is_its_own_proof(joint_assessed):
             if not agrees(line.put_in, float(f"{line.result:.8g}")):
                 wrong.append(f"{explanation.case}, {explanation.bolt}: {line.name}: {line.put_in} is not {line.result}")
     assert wrong == [] and lines > 20
+
+
+def test_every_line_of_a_face_of_known_pressure_is_its_own_proof():
+    lines = explain_face(assess(ROOT / "examples/bars.toml")).lines
+    assert [line for line in lines if not agrees(line.put_in, float(f"{line.result:.8g}"))] == [] and len(lines) > 60
+    assert all(line.source and line.basis for line in lines)
 
 
 def test_every_line_names_source_and_basis(joint_assessed):
