@@ -1,7 +1,7 @@
 """Proves that a bolted, friction-clamped joint does not slip, with every number traceable.
 
-`check` walks the whole path from a joint file or a Joint, `check_table` for a table of load cases; the formulas lie in slip.clamp, slip.pressure, slip.friction
-and slip.verdict and take plain numbers.
+`check` walks the whole path from a joint file or a Joint, `check_table` for a table of load cases; the formulas lie in
+slip.clamp, slip.pressure, slip.friction and slip.verdict and take plain numbers.
 """
 
 from __future__ import annotations

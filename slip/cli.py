@@ -111,6 +111,7 @@ COMMANDS = {
     "new": "write a commented joint file; never over an existing one",
     "check": "does the joint slip?",
     "cases": "many load cases: a table in, the envelope out",
+    "penalty": "the contact stiffness that a finite-element model should have",
     "explain": "every number with formula, numbers put in, source and basis",
     "tables": "the data with source and basis",
 }

@@ -140,7 +140,9 @@ class _Run:
         self.writer = Output(out, job.how) if out else None
         self.lost = Output(refused, Style("csv"))
         self.checkpoint = Checkpoint(out) if out else None
-        self.seen = Output(out.with_name(f"{out.name}.seen"), Style("csv")) if out else None  # marks of the cases so far
+        self.seen = (
+            Output(out.with_name(f"{out.name}.seen"), Style("csv")) if out else None
+        )  # marks of the cases so far
         self.marks = np.empty(0, dtype=np.uint64)
         self.gathering = False
 

@@ -59,7 +59,7 @@ def _lines(
     near = chosen(summary.worst, cases, bolts)
     if near and top is None:
         yield _part("nearest", _listed([_short(w) for w in near[: SHOWN + 1]], ", "))
-    yield _part("reserves", _spread(found))
+    yield _part("reserves", spread_said(found))
     if summary.near_count:
         value, case, bolt = summary.near[0]
         count = f"{summary.near_count} near opening" + f", {summary.open_cases} with an open bolt" * bool(
@@ -135,7 +135,7 @@ def _short(w: Worst) -> str:
     return f"{plain(w.case, 20)} {_reserve(w)} ({w.bolt or check_name(w.check)})"
 
 
-def _spread(found: TableResult) -> str:
+def spread_said(found: TableResult) -> str:
     """How many cases lie between which reserves, in few steps; JSON and the page have all."""
     edges, counts = (1.0, 1.1, 1.25, 1.5, 2.0), found.summary.spread
     said, first = [], 0

@@ -100,6 +100,8 @@ def bolts_figure(found: TableResult, system: System, ink: Ink = LIGHT) -> Figure
             x, y = (float(v) for v in place)
             filled = colours[kind] if kind == 0 else "none"
             axes.plot([x], [y], MARKERS[kind], color=colours[kind], markerfacecolor=filled, markersize=9 if few else 5)
+            if i == weakest and not few:
+                axes.plot([x], [y], "o", color=ink.line, markerfacecolor="none", markersize=11)
             if few or i == weakest:
                 said = f"{plain(found.summary.bolts[i], 12)}\n{factor(value, 1.0) if math.isfinite(value) else '-'}"
                 axes.annotate(said, (x, y), (0, 7), textcoords="offset points", ha="center", va="bottom", fontsize=8)

@@ -14,7 +14,7 @@ from slip.base.units import System
 from slip.cases.run import TableResult
 from slip.cases.summary import ENVELOPE, KEPT, LISTED, NEAR, Worst
 from slip.cases.write import style
-from slip.report.cases import KINDS, chosen
+from slip.report.cases import KINDS, chosen, spread_said
 from slip.report.cases_figure import bolts_picture, spread_names, spread_picture
 from slip.report.cases_ledger import worst_bolts
 from slip.report.cases_rows import result_rows
@@ -73,6 +73,7 @@ def cases_page(
             not_judged=_not_judged(found),
             refused=_refused(found),
             spread=_spread(found),
+            spread_said=spread_said(found),
             spread_picture=spread_picture(found) if judged else None,
             bolts_picture=bolts_picture(found, system) if judged else None,
             envelope=_envelope(found, system, bolts),

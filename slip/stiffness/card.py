@@ -9,7 +9,6 @@ from slip.base.records import record
 from slip.friction.partial import HIGH, LOW, TYPICAL
 from slip.joint.elements import Elements
 from slip.joint.plates import Plate
-from slip.stiffness.interface import InterfaceValues
 from slip.stiffness.subject import Subject, constant
 from slip.stiffness.window import Response, response
 
@@ -51,9 +50,9 @@ class Card:
     log: str
 
 
-def card(subject: Subject, values: InterfaceValues | None, k: float, purpose: str, elements: Elements) -> Card:
-    """The card for a value per area [N/mm^3] and its purpose."""
-    responses = _readings(subject, values, k, purpose)
+def card(subject: Subject, k: float, purpose: str, elements: Elements) -> Card:
+    """The card for a value per area [N/mm^3] and its purpose; that of the interface follows the pressure where the face does."""
+    responses = _readings(subject, k, purpose)
     carries, rule = contact_points(subject.joint.plates, elements.element_size)
     return Card(
         expected=tuple(_expected(subject, responses)),
@@ -64,15 +63,12 @@ def card(subject: Subject, values: InterfaceValues | None, k: float, purpose: st
     )
 
 
-def _readings(
-    subject: Subject, values: InterfaceValues | None, k: float, purpose: str
-) -> tuple[Response, Response, Response]:
-    """What the joint does at the low end, the value itself and the high end of its band."""
-    if purpose == "stick" or values is None:
-        one = response(subject, constant(k))
-        return one, one, one
-    low, high = (response(subject, constant(k * values.k_t["weighted"][i] / values.typical)) for i in (LOW, HIGH))
-    return low, response(subject, constant(k)), high
+def _readings(subject: Subject, k: float, purpose: str) -> tuple[Response, ...]:
+    """What the joint does over the band of the face's own stiffness, or at the one value that only has to stick."""
+    face = subject.stiffness
+    if purpose == "stick" or face is None:
+        return (response(subject, constant(k)),) * 3
+    return tuple(response(subject, face, reading) for reading in (LOW, TYPICAL, HIGH))
 
 
 def _expected(subject: Subject, responses: tuple[Response, ...]) -> list[Expected]:
@@ -126,7 +122,9 @@ def _log(subject: Subject, k: float, purpose: str) -> str:
     joint = subject.joint
     traction = subject.friction * subject.pressures.weighted
     name = joint.title or joint.file
+    slope = None if purpose == "stick" or subject.stiffness is None else subject.stiffness.slope
+    follows = "" if slope is None else f" (following the pressure: {slope[TYPICAL]:.4g} /mm times it)"
     return (
-        f"{name}, {joint.digest[:12]}: contact stiffness {k:.4g} N/mm^3 along the face, for {purpose}; "
+        f"{name}, {joint.digest[:12]}: contact stiffness {k:.4g} N/mm^3 along the face{follows}, for {purpose}; "
         f"elastic slip {1e3 * traction / k:.3g} um at {traction:.3g} MPa; friction {subject.friction:g}; slip {slip.__version__}"
     )

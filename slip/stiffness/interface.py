@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from slip.base.records import record
+from slip.friction.faces import FaceStiffness
 from slip.friction.partial import HIGH, LOW, TYPICAL
 from slip.stiffness.subject import Subject, constant
 from slip.stiffness.window import Response, response
@@ -13,8 +14,8 @@ PLACES = ("mean", "weighted", "peak")
 
 @record(eq=False)
 class InterfaceValues:
-    """k_t [N/mm^3] low, typical, high at the mean, the clamp-weighted and the peak pressure, by those names; k_n likewise at the
-    typical reading, None where the face was measured. slope [1/mm]: k_t over pressure, None for a measured constant.
+    """k_t [N/mm^3] low, typical, high at the mean, the clamp-weighted and the peak pressure, by those names; normal: k_n
+    likewise, typical, None where the face was measured. slope [1/mm]: k_t over pressure, None for a measured constant.
 
     elastic_slip (low, typical, high stiffness) [mm]: motion of the face at its limit traction, at any pressure where k_t follows it.
     own: what the joint does with the face's own stiffness; constant: with the typical value at the clamp-weighted pressure.
@@ -23,6 +24,7 @@ class InterfaceValues:
     k_t: dict[str, tuple[float, float, float]]
     slope: tuple[float, float, float] | None
     elastic_slip: tuple[float, float, float]
+    normal: dict[str, float] | None
     source: str
     basis: str
     own: Response
@@ -53,8 +55,17 @@ def interface_values(subject: Subject) -> InterfaceValues | None:
         k_t=k_t,
         slope=face.slope,
         elastic_slip=(low, typical, high),
+        normal=_normal(face, pressures),
         source=face.source,
         basis=face.basis,
         own=response(subject, face),
         constant=response(subject, constant(k_t["weighted"][TYPICAL])),
     )
+
+
+def _normal(face: FaceStiffness, pressures: dict[str, float]) -> dict[str, float] | None:
+    """Normal stiffness per area [N/mm^3] of a rough face: in proportion to the pressure, as the calculation of k_t found it."""
+    for step in face.trace.steps:
+        if step.formula.symbol == "k_n":
+            return {name: float(step.result) * p for name, p in pressures.items()}
+    return None

@@ -17,9 +17,12 @@ from slip.joint.elements import Elements
 from slip.joint.joint import Joint
 from slip.stiffness.audit import Audit, audit
 from slip.stiffness.card import Card, card
+from slip.stiffness.forms import as_per_area
 from slip.stiffness.interface import InterfaceValues, interface_values
-from slip.stiffness.subject import Subject, of_face, of_joint
-from slip.stiffness.window import LEVELS, Response, Window, rigid, sweep, values, window
+from slip.stiffness.listing import Form, forms
+from slip.stiffness.subject import Subject, constant, of_face, of_joint
+from slip.stiffness.upper import Upper, upper_bounds
+from slip.stiffness.window import LEVELS, Response, Window, response, rigid, sweep, values, window
 
 STICK, INTERFACE = "stick", "interface"
 SERVES = 0.05  # error within which a contact that is meant to stick does so
@@ -32,9 +35,11 @@ LEAST_ACROSS = 4  # elements across a patch below which a mesh does not see it (
 class Penalty:
     """Everything that is said of the contact stiffness of a model.
 
-    subject: the load case that it is judged on. interface: values of the real face, None where nothing is known of it. windows: against
-    each reference that is asked for. recommended: by purpose, per area [N/mm^3]. audit: of the present value, None where there is none.
-    card: for the first purpose. rigid: the joint with a contact that does not give. notes: warnings of this answer.
+    subject: the load case that it is judged on. interface: values of the real face, None where nothing is known of it.
+    windows: against each reference that is asked for. recommended: by purpose, per area [N/mm^3]; forms: of each of these
+    values. upper: bounds from above. serves_all: values that keep every quantity within 10 %, by purpose; None where no value
+    does. audit: of the present value, None where there is none. card: for the last purpose. rigid: the joint with a contact
+    that does not give. notes: warnings of this answer.
     """
 
     assessment: Assessment | FaceAssessment
@@ -43,6 +48,8 @@ class Penalty:
     interface: InterfaceValues | None
     windows: tuple[Window, ...]
     recommended: dict[str, float]
+    forms: dict[str, tuple[Form, ...]]
+    upper: tuple[Upper, ...]
     serves_all: dict[str, tuple[float, float] | None]
     audit: Audit | None
     card: Card
@@ -78,6 +85,8 @@ def penalty(joint: Joint | PressedFace | str | Path, progress: Progress | None =
     recommended = {w.purpose: _recommended(w, own) for w in asked}
     present = _present(subject, elements, notes)
     purpose = asked[-1].purpose
+    at = {name: response(subject, constant(value)) for name, value in recommended.items()}
+    normal = elements.present_normal or _normal(own)
     return Penalty(
         assessment=found,
         subject=subject,
@@ -85,9 +94,11 @@ def penalty(joint: Joint | PressedFace | str | Path, progress: Progress | None =
         interface=own,
         windows=asked,
         recommended=recommended,
+        forms={name: forms(subject, elements, value, normal, at[name]) for name, value in recommended.items()},
+        upper=upper_bounds(subject, elements, at[purpose], recommended[purpose]),
         serves_all={w.purpose: common(w) for w in asked},
         audit=None if present is None else audit(subject, present, asked, recommended),
-        card=card(subject, own, recommended[purpose], purpose, elements),
+        card=card(subject, recommended[purpose], purpose, elements),
         rigid=stuck,
         notes=tuple(notes),
     )
@@ -121,6 +132,11 @@ def _recommended(w: Window, own: InterfaceValues | None) -> float:
     return float(w.k[-1]) if len(known) < len(least) or not known else max(known)
 
 
+def _normal(own: InterfaceValues | None) -> float | None:
+    """Normal stiffness per area of a rough face at the clamp-weighted pressure [N/mm^3]; None where it is not known."""
+    return None if own is None or own.normal is None else own.normal["weighted"]
+
+
 def common(w: Window, level: float = LEVELS[0]) -> tuple[float, float] | None:
     """The values that keep every quantity within a level; None where no value does."""
     names = [name for name in w.errors if not np.isnan(w.errors[name]).all()]
@@ -135,17 +151,21 @@ def _present(subject: Subject, elements: Elements, notes: list[Note]) -> float |
     """The present value per area; a note says why it cannot be told."""
     if elements.present is None:
         return None
-    from slip.stiffness.forms import as_per_area
-
     form, value = elements.present
     traction = (elements.friction or subject.friction) * subject.pressures.weighted
     try:
         return float(
             as_per_area(
-                form, value, limit_traction=traction, element_size=elements.element_size, order=elements.element_order,
-                dimension=elements.dimension, width=elements.width, normal=elements.present_normal,
+                form,
+                value,
+                limit_traction=traction,
+                element_size=elements.element_size,
+                normal=elements.present_normal,
+                order=elements.element_order,
+                dimension=elements.dimension,
+                width=elements.width,
             )
-        )  # fmt: skip
+        )
     except ValueError as error:
         notes.append(
             Note("present-unknown", f"the present value cannot be told per area: {error}", "finite_elements.present")

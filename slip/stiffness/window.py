@@ -73,10 +73,10 @@ class Window:
     highest: dict[str, dict[float, float | None]]
 
 
-def response(subject: Subject, stiffness: FaceStiffness) -> Response:
-    """The joint's response with a contact of this stiffness. Raises NotConverged or InputError where the model cannot be solved."""
+def response(subject: Subject, stiffness: FaceStiffness, reading: int = TYPICAL) -> Response:
+    """The joint's response with a contact of this stiffness, at one of its readings. Raises NotConverged or InputError where the model cannot be solved."""
     model = subject.model(stiffness)
-    found = motions_of(model, subject.friction, TYPICAL, subject.one, subject.other, subject.alternating)
+    found = motions_of(model, subject.friction, reading, subject.one, subject.other, subject.alternating)
     clamp = subject.one[1]
     built = model.build(clamp, TYPICAL)
     pressed = built.press(clamp) * built.compliance.area

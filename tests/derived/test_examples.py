@@ -248,7 +248,9 @@ def test_jib() -> None:
     pull = -weight / n - 2 * tilting / (n * radius) * cos(place - jib)
     along = -drive * sin(jib) / n - drive * arm * 1e3 / (n * radius)
     across = drive * cos(jib) / n
-    (row,) = (r for r in (EXAMPLES / "jib.csv").read_text(encoding="utf-8").splitlines() if r.startswith("slew 252;B3;"))
+    (row,) = (
+        r for r in (EXAMPLES / "jib.csv").read_text(encoding="utf-8").splitlines() if r.startswith("slew 252;B3;")
+    )
     typed = [1e3 * float(cell.replace(",", ".")) for cell in row.split(";")[2:5]]
     assert typed == pytest.approx([along, -across, 0.2 * pull], abs=5.01)  # the table has two decimals of a kN
 

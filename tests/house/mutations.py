@@ -170,8 +170,8 @@ MUTATIONS = (
     Mutation(
         "turning moment on a face of known pressure",
         "friction/known_pressure.py",
-        "arms[0] * vy - arms[1] * vx",
-        "arms[0] * vy + arms[1] * vx",
+        '"y": arms[1], "V_x": vx',
+        '"y": -arms[1], "V_x": vx',
         "tests/derived/test_pressed_face.py",
     ),
 )

@@ -22,6 +22,7 @@ ORDER = {
     "assess": 7,
     "cases": 8,
     "scatter": 8,
+    "stiffness": 8,
     "report": 9,
     "commands": 10,
     "cli": 11,

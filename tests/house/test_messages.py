@@ -25,6 +25,8 @@ CALLS = {
     "fail": ("error", 1),
     "fail_at": ("error", 1),
     "stop_line": ("error", 2),
+    "_one": ("error", 2),
+    "_fault": ("error", 2),
     "_looked_up": ("error", 3),
     "_kind_of": ("error", 4),
     "assume": ("assumption", 0),

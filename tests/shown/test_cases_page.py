@@ -25,6 +25,21 @@ from slip.report.cases_page import cases_page
 ROOT = Path(__file__).resolve().parents[2]
 JOINT, TABLE = ROOT / "examples/jib.toml", ROOT / "examples/jib.csv"
 HOSTILE = ['<script>alert("1")</script>', "\"><img src='x'>", "{{ 7 * 7 }}", "a & b", "\u202egnp.exe"]
+THREE = """\
+format = 1
+units = "N mm"
+[tightening]
+preload = [18000, 26000]
+[losses]
+embedding = "2000 N"
+relaxation = "5 %"
+[interface]
+friction = [0.15, 0.22]
+[pattern]
+positions = [[-60, 0], [0, 0], [60, 0]]
+[axial]
+meaning = "external"
+"""
 NUMBER = re.compile(r"(?<![\w.])\d+(?:\.\d+)?")
 
 
@@ -125,6 +140,28 @@ def test_every_number_of_the_screen_is_on_the_page(
     # the page has all notes, and no path of a folder
     screen = re.sub(r"\(\+\d+ more: --json\)|(?ms:^written .*?(?=^\w))", "", screen)
     assert len(set(NUMBER.findall(screen))) > 15 and set(NUMBER.findall(screen)) - on_page == set()
+
+
+def test_numbers_of_a_large_screen_too(tmp_path: Path) -> None:
+    """Refused rows, open bolts, forces that miss the load by 120 N mm at 60 mm of hypot(21, 6) N: each line of the screen is there."""
+    (tmp_path / "joint.toml").write_text(THREE, encoding="utf-8")
+    forces, loads = ["case,bolt,Fx[N],Fy[N],Fax[N],kind\n"], ["case,Fx[N],Fy[N],Fz[N],kind\n"]
+    for i in range(120):
+        pull = 150.0 * i
+        forces += [f"case {i},B{b},{10 * i + 7},{b},{pull},static\n" for b in (1, 2, 3)]
+        loads.append(f"case {i},{30 * i + 20},6,{3 * pull},static\n")
+    forces += ["late,B1,1,2,3,static\n", "late,B9,1,2,3,static\n", "later,B2,x,2,3,static\n"]
+    for name, lines in (("forces", forces), ("loads", loads)):
+        (tmp_path / f"{name}.csv").write_text("".join(lines), encoding="utf-8")
+    table = tmp_path / "forces.csv"
+    found = check_table(tmp_path / "joint.toml", table, tmp_path / "o.csv", loads=tmp_path / "loads.csv")
+    assert found.summary.refused == 2 and found.summary.near_count > 5 and found.summary.balanced == 120
+    screen = re.sub(r"(?m)^(written|  +rows refused).*\n(?:  .*\n)*", "", cases_text(found))
+    words = Seen(cases_page(found, str(table), None, 20, (), ())).text
+    assert set(NUMBER.findall(screen)) - set(NUMBER.findall(words)) == set()
+    for line in ("reserves", "apart", "open", "refused", "bolts", "nearest"):
+        assert f"\n{line} " in screen
+    assert "With both: 120 cases. The bolt forces add up to the joint's load within 9.2% (the worst, case 0)." in words
 
 
 # what it shows

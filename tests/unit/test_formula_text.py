@@ -12,7 +12,7 @@ import pytest
 from slip.base import tables
 from slip.base.formulas import Formula, evaluate
 
-STAGES = ("clamp", "pressure", "friction", "verdict")
+STAGES = ("clamp", "pressure", "friction", "verdict", "stiffness")
 DRAWS = 20
 USUAL = (0.1, 0.9)
 SHEARED = {"Q": (1, 5), "P": (60, 90)}  # below gross slip whatever the friction
