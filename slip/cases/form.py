@@ -164,7 +164,10 @@ def _columns(header: Sequence[str], joint: Joint, file: str, line: int) -> dict[
     errors: list[InputError] = []
     heads = [_head(cell, theirs, joint.table.columns) for cell in header]
     bolts = any(name == "bolt" for name, _ in heads)
-    known = SHARED_COLUMNS | (BOLT_COLUMNS | {"Fz": "force"} if bolts else JOINT_COLUMNS)
+    known = SHARED_COLUMNS | (BOLT_COLUMNS if bolts else JOINT_COLUMNS)
+    if bolts:  # of the components along the table's axes the two in the face; the third is no force that is known to pull the bolt
+        shear = needed(bolts, joint)[2:]
+        known = {name: kind for name, kind in known.items() if name not in ("Fx", "Fy")} | dict.fromkeys(shear, "force")
     for position, (name, unit) in enumerate(heads):
         if name not in known:
             continue
@@ -240,6 +243,18 @@ def _missing(
         write = f"add it, or name it in the joint file: [table] columns = {{ {pairs} }}"
         expected = f"a header with {', '.join(absent)}"
         errors.append(_one(file, line, "missing-column", cut(", ".join(header), 60), expected, write, absent[0]))
+    if bolts and not {"Fax", "Fclamp"} & found.keys():
+        along = f"F{AXIS[joint.table.axes[2][0]]}"
+        names = {
+            _head(cell, {theirs: ours for ours, theirs in joint.table.columns.items()}, joint.table.columns)[0]
+            for cell in header
+        }
+        if along in names:
+            expected = "the axial force as Fax, tension positive, with its meaning"
+            write = f'write [table] columns = {{ Fax = "{along}" }} and [axial] meaning, or take the column out'
+            errors.append(
+                _one(file, line, "axial-not-named", f"{along} along the bolts and no Fax", expected, write, along)
+            )
     if "Fax" in found and joint.axial.meaning is None:
         write = 'add [axial] meaning = "external", "bolt force" or "bolt force change" to the joint file'
         errors.append(

@@ -102,12 +102,14 @@ def check_table(
         )
     source = Table(Path(table), found)
     target = None if out is None else Path(out)
-    _refuse_overwriting(source.path, target, Path(found.file))
+    lost = Path(refused) if refused else _beside(source.path, target)
+    others = (Path(found.file), Path(loads) if loads else None)
+    refuse_overwriting({"--out": target, "--refused": lost}, (source.path, *others))
     how = style(target, source.form.separator, source.form.comma)
     wanted = Wanted(units or found.system, tuple(cases), tuple(bolts))
     _refuse_unknown(found, wanted)
     job = Job(prepare(found), source.form, wanted, how, Loads.of(found, loads))
-    run = _Run(job, source, target, Path(refused) if refused else _beside(source.path, target))
+    run = _Run(job, source, target, lost)
     return run.all(resume, executor, ahead, progress, chunk_size)
 
 
@@ -116,10 +118,16 @@ def _beside(table: Path, out: Path | None) -> Path:
     return out.with_name(f"{out.stem}.refused.csv") if out else Path(f"{table.stem}.refused.csv")
 
 
-def _refuse_overwriting(table: Path, out: Path | None, joint: Path) -> None:
-    if out is not None and out.resolve() in (table.resolve(), joint.resolve()):
-        remedy = "choose another name for the result"
-        raise Problems([InputError("report-over-input", "--out", "an input file", "another path", remedy, str(out))])
+def refuse_overwriting(written: dict[str, Path | None], inputs: Iterable[Path | None]) -> None:
+    """Raise Problems where a file that is written is an input, or where two that are written are one; keys: the options."""
+    taken = {path.resolve(): "an input file" for path in inputs if path is not None}
+    for option, path in written.items():
+        if path is None:
+            continue
+        if (found := taken.get(path.resolve())) is not None:
+            remedy = "choose another name"
+            raise Problems([InputError("report-over-input", option, found, "a path of its own", remedy, str(path))])
+        taken[path.resolve()] = f"the file of {option}"
 
 
 def _refuse_unknown(joint: Joint, wanted: Wanted) -> None:

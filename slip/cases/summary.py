@@ -47,6 +47,7 @@ class Summary:
         self.rows = self.refused = 0
         self.codes = {HOLDS: 0, FAILS: 0, NOT_SOLVED: 0}
         self.worst: list[Worst] = []
+        self.asked: list[Worst] = []
         self.not_judged: list[tuple[str, str]] = []
         self.reasons: dict[str, int] = {}
         self.spread = [0] * (len(BINS) + 1)
@@ -79,6 +80,7 @@ class Summary:
         self.refused += other.refused
         self.codes = {code: count + other.codes[code] for code, count in self.codes.items()}
         self.worst = nearest_first([*self.worst, *other.worst])
+        self.asked = nearest_first([*self.asked, *other.asked])
         self.not_judged = [*self.not_judged, *other.not_judged][:LISTED]
         for reason, count in other.reasons.items():
             if reason in self.reasons or len(self.reasons) < LISTED:
@@ -98,7 +100,8 @@ class Summary:
     def as_dict(self) -> dict[str, Any]:
         """As plain lists, for a file from which a run goes on."""
         found = dict(self.__dict__)
-        found["worst"] = [[getattr(w, name) for name in Worst.__dataclass_fields__] for w in self.worst]
+        for name in ("worst", "asked"):
+            found[name] = [[getattr(w, field) for field in Worst.__dataclass_fields__] for w in found[name]]
         found["highest"] = [self.highest.yield_use, self.highest.bearing_pressure]
         found["codes"] = [[code, count] for code, count in self.codes.items()]
         return found
@@ -109,7 +112,7 @@ class Summary:
         made = cls(tuple(found["bolts"]))
         made.__dict__.update(found)
         made.bolts = tuple(found["bolts"])
-        made.worst = [Worst(*values) for values in found["worst"]]
+        made.worst, made.asked = ([Worst(*values) for values in found[name]] for name in ("worst", "asked"))
         made.highest = Highest(*found["highest"])
         made.codes = {int(code): count for code, count in found["codes"]}
         made.not_judged = [(case, reason) for case, reason in found["not_judged"]]
@@ -124,14 +127,18 @@ def nearest_first(worst: list[Worst]) -> list[Worst]:
     return sorted(worst, key=lambda w: (w.code != FAILS, np.inf if w.reserve is None else w.reserve))[:KEPT]
 
 
-def summed(joint: Joint, form: Form, read: Read, judged: Judged) -> Summary:
-    """The summary of one chunk."""
+def summed(joint: Joint, form: Form, read: Read, judged: Judged, asked: tuple[str, ...] = ()) -> Summary:
+    """The summary of one chunk; cases that are asked for are kept however far from slip they are."""
     block, names = read.block, read.block.names
     made = Summary(joint.pattern.names)
     made.rows, made.refused, made.highest = read.count, read.refused.height, judged.highest
     for code in made.codes:
         made.codes[code] = int((judged.code == code).sum())
-    made.worst = _worst(joint, block, judged)
+    fails = judged.code == FAILS
+    order = np.lexsort((np.where(np.isnan(judged.reserve), np.inf, judged.reserve), ~fails))[: KEPT + 1]
+    made.worst = _governing(joint, block, judged, order)
+    if asked:
+        made.asked = _governing(joint, block, judged, np.flatnonzero(names.is_in(list(asked)).to_numpy()))
     open_cases = np.flatnonzero(judged.reason != "")
     made.not_judged = [(names[int(i)], str(judged.reason[i])) for i in open_cases[:LISTED]]
     for reason in read.refused["reason"].to_list():
@@ -149,13 +156,10 @@ def summed(joint: Joint, form: Form, read: Read, judged: Judged) -> Summary:
     return made
 
 
-def _worst(joint: Joint, block: Block, judged: Judged) -> list[Worst]:
-    """What governs each of the cases nearest to slip."""
-    fails = judged.code == FAILS
-    reserve = np.where(np.isnan(judged.reserve), np.inf, judged.reserve)
-    order = np.lexsort((reserve, ~fails))[: KEPT + 1]
+def _governing(joint: Joint, block: Block, judged: Judged, places: Array) -> list[Worst]:
+    """What governs each of the cases at these places, those that were judged."""
     found = []
-    for i in order[judged.reason[order] == ""]:
+    for i in places[judged.reason[places] == ""]:
         bolt, factor = int(judged.bolt[i]), float(judged.factor[i])
         found.append(
             Worst(

@@ -54,7 +54,7 @@ def work(job: Job, chunk: Chunk) -> Done:
     if job.how.kind:
         table = result(joint, form, frame, found.block, judged, job.wanted)
         data = encoded(table, job.how)
-    summary = summed(joint, form, found, judged)
+    summary = summed(joint, form, found, judged, job.wanted.cases)
     if job.loads is not None:
         summary.balance, summary.balanced = imbalance(joint, form, found.block, job.loads)
     marks = found.block.names.hash().to_numpy()

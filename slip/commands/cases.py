@@ -45,9 +45,14 @@ def run(asked: argparse.Namespace, progress: Progress | None) -> Outcome:
             raise Problems([InputError("out-of-limits", name, str(value), "1 or more", write_)])
     for name in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
         os.environ.setdefault(name, "1")  # the workers are processes; threads inside them only get in each other's way
-    from slip.cases.run import check_table
+    from slip.cases.run import check_table, refuse_overwriting
     from slip.report.cases import cases_json, cases_text
 
+    written = {
+        name: Path(p) if p else None
+        for name, p in (("--out", asked.out), ("--refused", asked.refused), ("--report", asked.report))
+    }
+    refuse_overwriting(written, [Path(p) for p in (asked.file, asked.table, asked.loads) if p])
     with _executor(asked.workers) as executor:
         found = check_table(
             asked.file,

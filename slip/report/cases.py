@@ -11,7 +11,7 @@ import slip
 from slip.base.units import System
 from slip.cases.hints import UNBALANCED
 from slip.cases.run import TableResult
-from slip.cases.summary import BINS, ENVELOPE, Worst
+from slip.cases.summary import BINS, ENVELOPE, Summary, Worst
 from slip.report.machine import FORMAT, UNITS, friction_entry
 from slip.report.words import CAUTION, check_name, columns, cut, factor, plain, wrapped
 from slip.verdict.stage import FAILS, HOLDS, NOT_SOLVED
@@ -22,9 +22,10 @@ SHOWN = 5  # of the cases nearest to slip, where nobody asks for more
 KINDS = {"clamp_low": "force", "clamp_high": "force", "shear": "force"}
 
 
-def chosen(worst: Sequence[Worst], cases: Sequence[str], bolts: Sequence[str]) -> list[Worst]:
-    """The governing rows of these cases and bolts; all where nothing is asked for."""
-    return [w for w in worst if (not cases or w.case in cases) and (not bolts or w.bolt in bolts)]
+def chosen(summary: Summary, cases: Sequence[str], bolts: Sequence[str]) -> list[Worst]:
+    """The governing rows of these cases and bolts; those nearest to slip where no case is asked for."""
+    listed = dict.fromkeys([*summary.asked, *summary.worst]) if cases else summary.worst
+    return [w for w in listed if (not cases or w.case in cases) and (not bolts or w.bolt in bolts)]
 
 
 def cases_text(
@@ -56,7 +57,10 @@ def _lines(
         yield _part("open", _listed([f"{plain(c, 20)}: {plain(r, 40)}" for c, r in summary.not_judged], "; "))
     if summary.refused:
         yield _part("refused", _listed([f"{plain(r, 50)} ({n})" for r, n in summary.reasons.items()], ", "))
-    near = chosen(summary.worst, cases, bolts)
+    near = chosen(summary, cases, bolts)
+    missing = [plain(c, 20) for c in cases if c not in {w.case for w in (*summary.asked, *summary.worst)}]
+    if missing:
+        yield _part("absent", _listed([f"{c}: not in the table, or not judged" for c in missing], "; "))
     if near and top is None:
         yield _part("nearest", _listed([_short(w) for w in near[: SHOWN + 1]], ", "))
     yield _part("reserves", spread_said(found))
@@ -66,7 +70,7 @@ def _lines(
             summary.open_cases
         )
         yield _part("apart", f"{count}; nearest {plain(case, 20)}, {bolt} at {factor(value, 1.0)}")
-    yield _part("bolts", _extremes(found, system, bolts))
+    yield from wrapped(_extremes(found, system, bolts), WIDTH, first=f"{'bolts':<9}", later=" " * 9)
     if summary.balanced and summary.balance[0] <= UNBALANCED:
         yield _part("balance", f"{summary.balanced} cases add up to the joint's load within {summary.balance[0]:.1%}")
     if found.out:
@@ -197,7 +201,7 @@ def cases_result(
             "fail": summary.codes[FAILS],
             "not_judged": summary.codes[NOT_SOLVED],
         },
-        "nearest": [_worst(w) for w in chosen(summary.worst, cases, bolts)[:top]],
+        "nearest": [_worst(w) for w in chosen(summary, cases, bolts)[:top]],
         "not_judged": [{"case": case, "reason": reason} for case, reason in summary.not_judged],
         "refused_reasons": summary.reasons,
         "reserves": [

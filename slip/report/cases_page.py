@@ -52,7 +52,7 @@ def cases_page(
     cases and bolts, of all where a list is empty.
     """
     system = units or found.joint.system
-    near = chosen(found.summary.worst, cases, bolts)[:top]
+    near = chosen(found.summary, cases, bolts)[:top]
     rows, reason = _rows(found)
     judged = bool(found.summary.worst)
     return (

@@ -37,7 +37,7 @@ def _lines(found: Penalty, system: System) -> Iterator[str]:
     yield f"-- {title} ".ljust(WIDTH, "-")
     place = f"{plain(s.case, 30)}, {s.end} end: shear {_say(s.force, 'force', system)}"
     gross = f", slips wholly at {s.gross * s.force / system.factor((1, 0, 0, 0)):.4g} {system.force}" if s.force else ""
-    yield from wrapped(f"Judged on {place}{gross}; {s.model(_face(found)).name}", WIDTH)
+    yield from wrapped(f"Judged on {place}{gross}; {found.model}", WIDTH)
     yield from _forms(found, system)
     for w in found.windows:
         yield from _window(found, w, system)
@@ -52,12 +52,6 @@ def _lines(found: Penalty, system: System) -> Iterator[str]:
         if texts:
             yield from wrapped(f"{name} ({len(texts)}): {'; '.join(texts)}", WIDTH)
     yield from wrapped(f"Caution: {CAUTION}", WIDTH)
-
-
-def _face(found: Penalty) -> Any:
-    from slip.stiffness.subject import constant
-
-    return constant(next(iter(found.recommended.values())))
 
 
 def _why(found: Penalty, purpose: str, system: System) -> Iterator[str]:

@@ -152,7 +152,7 @@ def stable_step(dt_el: Value, dt_c: Value) -> Value:
 )
 def largest_node_stiffness(r: Value, dt_el: Value, m_1: Value, m_2: Value) -> Value:
     """Stiffness per node [N/mm] that leaves at least the part r of the elements' step dt_el [s] (weyl1912, derived)."""
-    return 5 * (1 / r**2 - 1) / (dt_el**2 * (1 / m_1 + 1 / m_2))
+    return 4 * (1 / r**2 - 1) / (dt_el**2 * (1 / m_1 + 1 / m_2))
 
 
 @formula("r", "sqrt(2/(1 + sqrt(1 + 4*(k_t*h/E)^2)))", unit="1", **EXPLICIT, valid="long like bars, lumped masses")

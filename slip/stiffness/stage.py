@@ -35,7 +35,7 @@ LEAST_ACROSS = 4  # elements across a patch below which a mesh does not see it (
 class Penalty:
     """Everything that is said of the contact stiffness of a model.
 
-    subject: the load case that it is judged on. interface: values of the real face, None where nothing is known of it.
+    subject: the load case that it is judged on; model: by what. interface: values of the real face, None where nothing is known of it.
     windows: against each reference that is asked for. recommended: by purpose, per area [N/mm^3]; forms: of each of these
     values. upper: bounds from above. serves_all: values that keep every quantity within 10 %, by purpose; None where no value
     does. audit: of the present value, None where there is none. card: for the last purpose. rigid: the joint with a contact
@@ -44,6 +44,7 @@ class Penalty:
 
     assessment: Assessment | FaceAssessment
     subject: Subject
+    model: str
     elements: Elements
     interface: InterfaceValues | None
     windows: tuple[Window, ...]
@@ -90,6 +91,7 @@ def penalty(joint: Joint | PressedFace | str | Path, progress: Progress | None =
     return Penalty(
         assessment=found,
         subject=subject,
+        model=subject.model(constant(float(k[len(k) // 2]))).name,
         elements=elements,
         interface=own,
         windows=asked,

@@ -74,7 +74,10 @@ class Window:
 
 
 def response(subject: Subject, stiffness: FaceStiffness, reading: int = TYPICAL) -> Response:
-    """The joint's response with a contact of this stiffness, at one of its readings. Raises NotConverged or InputError where the model cannot be solved."""
+    """The joint's response with a contact of this stiffness, at one of its readings.
+
+    Raises NotConverged or InputError where the model cannot be solved.
+    """
     model = subject.model(stiffness)
     found = motions_of(model, subject.friction, reading, subject.one, subject.other, subject.alternating)
     clamp = subject.one[1]

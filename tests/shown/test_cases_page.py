@@ -156,7 +156,7 @@ def test_numbers_of_a_large_screen_too(tmp_path: Path) -> None:
     table = tmp_path / "forces.csv"
     found = check_table(tmp_path / "joint.toml", table, tmp_path / "o.csv", loads=tmp_path / "loads.csv")
     assert found.summary.refused == 2 and found.summary.near_count > 5 and found.summary.balanced == 120
-    screen = re.sub(r"(?m)^(written|  +rows refused).*\n(?:  .*\n)*", "", cases_text(found))
+    screen = re.sub(r"(?m)^(written|--|  +rows refused).*\n(?:  .*\n)*", "", cases_text(found))
     words = Seen(cases_page(found, str(table), None, 20, (), ())).text
     assert set(NUMBER.findall(screen)) - set(NUMBER.findall(words)) == set()
     for line in ("reserves", "apart", "open", "refused", "bolts", "nearest"):

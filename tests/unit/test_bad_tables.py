@@ -183,6 +183,15 @@ def test_names_and_axes_of_the_table(tmp_path: Path) -> None:
     assert results(tmp_path / "out.csv") == wanted
 
 
+def test_a_component_along_the_bolts_is_no_axial_force_by_itself(tmp_path: Path) -> None:
+    """The model's Y is the bolts' axis: its component may not be dropped unsaid, and may not be taken without its meaning."""
+    keys = '[table]\naxes = { x = "X", y = "-Z", normal = "Y" }\n'
+    data = "case,bolt,Fx[N],Fy[N],Fz[N]\na,B1,1,80000,2\na,B2,1,80000,2\n"
+    assert fault(tmp_path, data, JOINT + keys).code == "axial-not-named"
+    named = run(tmp_path, data, JOINT + keys + 'columns = { Fax = "Fy" }\n')
+    assert named.exit_code == 1 and named.summary.near_count == 1
+
+
 def test_axes_of_a_table_of_joint_loads(tmp_path: Path) -> None:
     head = "case,Fx[N],Fy[N],Fz[N],Mx[N mm],My[N mm],Mz[N mm]\n"
     square = JOINT.replace("[[-80, 0], [80, 0]]", "[[-80, -60], [80, -60], [-80, 60], [80, 60]]")
@@ -377,6 +386,29 @@ def test_a_result_may_not_replace_an_input(tmp_path: Path) -> None:
             check_table(tmp_path / "joint.toml", tmp_path / "cases.csv", out)
         assert caught.value.errors[0].code == code
     assert (tmp_path / "cases.csv").read_text(encoding="utf-8") == HEAD + GOOD
+
+
+@pytest.mark.parametrize(
+    ("options", "option"),
+    [
+        (["--refused", "cases.csv"], "--refused"),
+        (["--refused", "joint.toml"], "--refused"),
+        (["--out", "one.csv", "--refused", "one.csv"], "--refused"),
+        (["--out", "one.csv", "--report", "one.csv"], "--report"),
+        (["--loads", "loads.csv", "--out", "loads.csv"], "--out"),
+        (["--report", "joint.toml"], "--report"),
+    ],
+)
+def test_no_file_takes_the_place_of_another(
+    options: list[str], option: str, tmp_path: Path, monkeypatch: pytest.MonkeyPatch, capsys: pytest.CaptureFixture[str]
+) -> None:
+    monkeypatch.chdir(tmp_path)
+    files = {"joint.toml": JOINT, "cases.csv": HEAD + "a,B1,x,2,3\n" + GOOD, "loads.csv": "case,Fx[N],Fy[N]\na,1,2\n"}
+    for name, text in files.items():
+        Path(name).write_text(text, encoding="utf-8")
+    assert cli.main(["cases", "joint.toml", "cases.csv", *options]) == 2
+    assert option in capsys.readouterr().err
+    assert {p.name: p.read_text(encoding="utf-8") for p in tmp_path.iterdir()} == files
 
 
 def test_a_table_that_grows_is_read_to_where_it_was(tmp_path: Path) -> None:

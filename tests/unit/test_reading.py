@@ -487,7 +487,15 @@ def test_what_the_template_suggests_for_a_key_reads() -> None:
         "tightening.nut_factor": {"tightening": {"thread_friction": None, "head_friction": None}},
         "pattern.names": {"pattern": {"positions": "[[0, 0], [60, 0]]"}},
     }
-    apart = {"table.columns", "table.axes", "interface.pressure", "pattern.file", "tightening.preload", "tightening.source", "case[].acts_on"}
+    apart = {
+        "table.columns",
+        "table.axes",
+        "interface.pressure",
+        "pattern.file",
+        "tightening.preload",
+        "tightening.source",
+        "case[].acts_on",
+    }
     for key in KEYS:
         if key.path in apart or key.table in ("contact", "body[]", "bolt.segment[]"):
             continue

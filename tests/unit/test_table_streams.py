@@ -214,6 +214,7 @@ def test_filters_choose_rows_and_not_the_verdict(folder: Path) -> None:
     assert rows["case"].unique(maintain_order=True).to_list() == ["case 007", "case 123"]
     assert rows["bolt"].to_list() == ["B2", "group", "force only"] * 2
     assert found.exit_code == everything.exit_code and found.summary.worst == everything.summary.worst
+    assert sorted(w.case for w in found.summary.asked) == ["case 007", "case 123"]
 
 
 def test_summaries_add_up(folder: Path) -> None:

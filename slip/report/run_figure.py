@@ -1,0 +1,146 @@
+"""A run as a map: its points by regime and true slip, and the face's stiffness over pressure. Nothing is computed."""
+
+from __future__ import annotations
+
+from typing import Any
+
+import numpy as np
+from matplotlib.axes import Axes
+from matplotlib.figure import Figure
+from matplotlib.lines import Line2D
+
+from slip.base.units import System
+from slip.report.figures import DARK, LIGHT, WIDTH, Ink, image, look
+from slip.stiffness.run_found import OPEN, POINT, SLIPS, STICK, Examined
+from slip.stiffness.run_points import Bin
+from slip.stiffness.run_table import RunTable
+
+Array = np.ndarray
+COLOURS = "cividis"  # even in lightness, alike for readers who tell red from green and who do not
+MARKERS = {STICK: "o", SLIPS: "s", OPEN: "x"}
+MANY = 3000  # points beyond which they are stored as dots of a picture, not one by one
+DPI = 200
+
+
+def run_picture(found: Examined, system: System, step: int | None = None) -> dict[str, Any]:
+    """The map of a step for light and dark, with the words in its place."""
+    step = found.worst if step is None else step
+    light, dark = (image(run_figure(found, system, step, ink), ink) for ink in (LIGHT, DARK))
+    counts = ", ".join(f"{int((found.state[step] == i).sum())} {name}" for i, name in enumerate(POINT))
+    return {"light": light, "dark": dark, "alt": f"Map of the contact. {_title(found, step)}. Points: {counts}."}
+
+
+def run_figure(found: Examined, system: System, step: int | None = None, ink: Ink = LIGHT) -> Figure:
+    """The points of a step, by default the one at which most of the clamp slips: shape by regime, colour by true slip."""
+    step = found.worst if step is None else step
+    across, up, names = _plane(found.table)
+    unit = system.out(1.0, "length")
+    places = np.stack([across, up], axis=1) * unit
+    size = float(np.ptp(places, axis=0).max()) or 1.0
+    span = np.maximum(np.ptp(places, axis=0), 0.15 * size) + 0.12 * size
+    with look(ink):
+        height = float(np.clip(WIDTH * span[1] / span[0], 1.2, 4.2)) + 1.6
+        figure = Figure(figsize=(WIDTH, height), layout="constrained", dpi=DPI)
+        axes = figure.add_subplot()
+        axes.set_aspect("equal")
+        middle = (places.min(axis=0) + places.max(axis=0)) / 2
+        axes.set_xlim(*(float(v) for v in middle[0] + span[0] / 2 * np.array([-1, 1])))
+        axes.set_ylim(*(float(v) for v in middle[1] + span[1] / 2 * np.array([-1, 1])))
+        axes.set_xlabel(f"{names[0]} in {system.length}")
+        axes.set_ylabel(f"{names[1]} in {system.length}")
+        axes.locator_params(nbins=6)
+        _plain(axes, ink)
+        handles = _points(figure, axes, found, places, step, system, ink)
+        axes.set_title(_title(found, step), fontsize=9)
+        figure.legend(handles=handles, loc="outside lower center", ncols=3, frameon=False)
+    return figure
+
+
+def _plane(table: RunTable) -> tuple[Array, Array, str]:
+    """The two coordinates in which the face lies; x and y unless one of them does not change and z does."""
+    spans = [float(np.ptp(v)) for v in (table.x, table.y)]
+    if table.z is not None and min(spans) < 1e-6 * float(np.ptp(table.z)):
+        return (table.x, table.z, "xz") if spans[0] >= spans[1] else (table.y, table.z, "yz")
+    return table.x, table.y, "xy"
+
+
+def _title(found: Examined, step: int) -> str:
+    name = found.table.steps[step]
+    return f"{found.steps.share[step]:.1%} of the clamp slips" + (f", step {name}" if name else "")
+
+
+def _points(
+    figure: Figure, axes: Axes, found: Examined, places: Array, step: int, system: System, ink: Ink
+) -> list[Line2D]:
+    """Every point; those that slip are squares filled by their true slip, those that stick are rings of that colour."""
+    scale, unit = (1e3, "um") if system.length == "mm" else (1e6, "uin")
+    state = found.state[step]
+    slip = None if found.slips is None else np.hypot(*found.slips.vector[:, step]) * scale * system.out(1.0, "length")
+    most = 0.0 if slip is None else float(np.where(state == OPEN, 0.0, slip).max())
+    dots: dict[str, Any] = {"rasterized": len(state) > MANY, "s": float(np.clip(4000 / len(state), 2, 40))}
+    drawn, handles = None, []
+    for kind in (STICK, SLIPS, OPEN):
+        here = state == kind
+        if not here.any():
+            continue
+        x, y = places[here].T
+        marker = MARKERS[kind]
+        if kind == OPEN or slip is None or most == 0:
+            colour = {STICK: ink.shear, SLIPS: ink.weakest, OPEN: ink.faint}[kind]
+            face = {} if kind == OPEN else {"facecolors": colour if kind == SLIPS else "none"}
+            axes.scatter(
+                x,
+                y,
+                marker=marker,
+                linewidths=0.9,
+                **({"color": colour} if kind == OPEN else {"edgecolors": colour}),
+                **face,
+                **dots,
+            )
+        else:
+            coloured: dict[str, Any] = {"c": slip[here], "cmap": COLOURS, "vmin": 0.0, "vmax": most}
+            drawn = axes.scatter(x, y, marker=marker, linewidths=0.9, **coloured, **dots)
+            if kind == STICK:
+                drawn.set_facecolor("none")
+        filled = ink.line if kind == SLIPS else "none"
+        handles.append(
+            Line2D([], [], linestyle="none", marker=marker, color=ink.line, markerfacecolor=filled, label=POINT[kind])
+        )
+    if drawn is not None:
+        from_zero = figure.colorbar(drawn, ax=axes, shrink=0.9)
+        from_zero.set_label(f"true slip in {unit}")
+        from_zero.outline.set_edgecolor(ink.faint)
+    return handles
+
+
+def pressure_figure(bins: tuple[Bin, ...], system: System, ink: Ink = LIGHT) -> Figure:
+    """k_t over pressure: the face's law with its band, and the run's sticking points with their spread."""
+    pressure, k = system.out(1.0, "pressure"), system.out(1.0, "stiffness per area")
+    with look(ink):
+        figure = Figure(figsize=(WIDTH, 3.4), layout="constrained", dpi=DPI)
+        axes = figure.add_subplot()
+        law = [(b.p * pressure, *(v * k for v in b.law)) for b in bins if b.law is not None]
+        if law:
+            p, low, typical, high = np.array(law).T
+            axes.fill_between(p, low, high, color=ink.shear, alpha=0.2, linewidth=0, label="face's law, low to high")
+            axes.plot(p, typical, color=ink.shear, linewidth=1.8, label="typical")
+        own = [(b.p * pressure, *(v * k for v in b.own)) for b in bins if b.own is not None]
+        if own:
+            p, low, middle, high = np.array(own).T
+            reach = np.stack([middle - low, high - middle])
+            style: dict[str, Any] = {"linestyle": "none", "marker": "D", "markersize": 4, "capsize": 2}
+            axes.errorbar(p, middle, yerr=reach, color=ink.weakest, label="run, points that stick", **style)
+        axes.set_ylim(bottom=0.0)
+        axes.set_xlim(left=0.0)
+        axes.set_xlabel(f"pressure in {system.pressure}")
+        axes.set_ylabel(f"tangential stiffness in {system.unit('stiffness per area')}")
+        _plain(axes, ink)
+        if law or own:
+            figure.legend(loc="outside lower center", ncols=2, frameon=False)
+    return figure
+
+
+def _plain(axes: Axes, ink: Ink) -> None:
+    axes.spines[["top", "right"]].set_visible(False)
+    axes.tick_params(color=ink.faint)
+    axes.patch.set_alpha(0.0)
