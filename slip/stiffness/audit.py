@@ -6,7 +6,7 @@ import numpy as np
 
 from slip.base.records import record
 from slip.stiffness.subject import Subject, constant
-from slip.stiffness.window import QUANTITIES, Response, Window, error, response
+from slip.stiffness.window import Response, Window, error, response
 
 LARGE = 0.10  # an error that is worth a word
 
@@ -28,7 +28,7 @@ def audit(subject: Subject, k: float, windows: tuple[Window, ...], recommended: 
     recommended: by purpose [N/mm^3]. Raises NotConverged or SlipsWholly where the joint cannot be solved with the value.
     """
     found = response(subject, constant(k))
-    errors = {w.purpose: {name: error(found, w.reference, name) for name in QUANTITIES} for w in windows}
+    errors = {w.purpose: {name: error(found, w.reference, name) for name in w.errors} for w in windows}
     return Audit(k, found, errors, tuple(_advice(subject, k, found, errors, recommended)))
 
 

@@ -10,7 +10,7 @@ from slip.friction.partial import HIGH, LOW, TYPICAL
 from slip.joint.elements import Elements
 from slip.joint.plates import Plate
 from slip.stiffness.subject import Subject, constant
-from slip.stiffness.window import Response, response
+from slip.stiffness.window import STICK, WITHOUT, Response, response
 
 ALIKE = 1.1  # moduli or thicknesses within this factor are alike
 TESTS = (
@@ -55,7 +55,7 @@ def card(subject: Subject, k: float, purpose: str, elements: Elements) -> Card:
     responses = _readings(subject, k, purpose)
     carries, rule = contact_points(subject.joint.plates, elements.element_size)
     return Card(
-        expected=tuple(_expected(subject, responses)),
+        expected=tuple(_expected(subject, responses, purpose)),
         tests=(*TESTS, *TWO_MESHES, NO_CURE),
         carries=carries,
         rule=rule,
@@ -66,12 +66,12 @@ def card(subject: Subject, k: float, purpose: str, elements: Elements) -> Card:
 def _readings(subject: Subject, k: float, purpose: str) -> tuple[Response, ...]:
     """What the joint does over the band of the face's own stiffness, or at the one value that only has to stick."""
     face = subject.stiffness
-    if purpose == "stick" or face is None:
+    if purpose == STICK or face is None:
         return (response(subject, constant(k)),) * 3
     return tuple(response(subject, face, reading) for reading in (LOW, TYPICAL, HIGH))
 
 
-def _expected(subject: Subject, responses: tuple[Response, ...]) -> list[Expected]:
+def _expected(subject: Subject, responses: tuple[Response, ...], purpose: str) -> list[Expected]:
     """The band of each quantity over the readings; the contact force over the clamps, the gross slip load is one number."""
     low, high = (float(v.sum()) for v in subject.clamps)
     motions = [r.motions for r in responses]
@@ -81,6 +81,8 @@ def _expected(subject: Subject, responses: tuple[Response, ...]) -> list[Expecte
         ("stiffness", "stiffness", "stiffness"),
         ("first slip", "force", "first_slip_load"),
     ):
+        if name in WITHOUT[purpose]:
+            continue
         found = [getattr(m, attribute) for m in motions]
         if all(v is not None for v in found):
             rows.append(Expected(name, min(found), found[TYPICAL], max(found), kind))
@@ -122,7 +124,7 @@ def _log(subject: Subject, k: float, purpose: str) -> str:
     joint = subject.joint
     traction = subject.friction * subject.pressures.weighted
     name = joint.title or joint.file
-    slope = None if purpose == "stick" or subject.stiffness is None else subject.stiffness.slope
+    slope = None if purpose == STICK or subject.stiffness is None else subject.stiffness.slope
     follows = "" if slope is None else f" (following the pressure: {slope[TYPICAL]:.4g} /mm times it)"
     return (
         f"{name}, {joint.digest[:12]}: contact stiffness {k:.4g} N/mm^3 along the face{follows}, for {purpose}; "

@@ -22,11 +22,10 @@ from slip.stiffness.interface import InterfaceValues, interface_values
 from slip.stiffness.listing import Form, forms
 from slip.stiffness.subject import Subject, constant, of_face, of_joint
 from slip.stiffness.upper import Upper, upper_bounds
-from slip.stiffness.window import LEVELS, Response, Window, response, rigid, sweep, values, window
+from slip.stiffness.window import INTERFACE, LEVELS, STICK, Response, Window, response, rigid, sweep, values, window
 
-STICK, INTERFACE = "stick", "interface"
 SERVES = 0.05  # error within which a contact that is meant to stick does so
-# Quantities that a sticking contact has to reproduce: at rest it has no first slip that any stiffness could miss.
+# Quantities that a sticking contact has to reproduce.
 OF_STICK = ("stiffness", "true slip", "energy", "load sharing")
 LEAST_ACROSS = 4  # elements across a patch below which a mesh does not see it (practice)
 

@@ -25,8 +25,11 @@ Array = np.ndarray
 DECADES, EACH, FEW = 6, 4, 2  # of the sweep; values in a decade; on half-spaces, whose steps are dear
 LEVELS = (0.10, 0.05, 0.01)
 HARD = 1e5  # times what the bodies give: a contact that does not give to five digits
+STICK, INTERFACE = "stick", "interface"
 # Quantities of the window: what a value of the sweep is asked for.
 QUANTITIES = ("stiffness", "first slip", "slip length", "true slip", "energy", "load sharing")
+# A contact that does not give has a stress without bound at its ends: its first slip is a matter of the mesh, and no reference.
+WITHOUT = {STICK: ("first slip",), INTERFACE: ()}
 NOTHING = 1e-12  # below this part of what the contact can do a quantity is none, and has no error
 
 
@@ -137,7 +140,8 @@ def window(purpose: str, k: Array, responses: Sequence[Response | None], referen
     """Errors of a sweep against a reference, and the bounds of the values that serve."""
     solved = [i for i, r in enumerate(responses) if r is not None]
     k, kept = k[solved], tuple(r for r in responses if r is not None)
-    errors = {name: np.array([error(r, reference, name) for r in kept]) for name in QUANTITIES}
+    asked = [name for name in QUANTITIES if name not in WITHOUT[purpose]]
+    errors = {name: np.array([error(r, reference, name) for r in kept]) for name in asked}
     return Window(
         purpose,
         k,

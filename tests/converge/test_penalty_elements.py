@@ -236,7 +236,7 @@ class Joint:
 
     def errors(self, k):
         window_ = window(self.case.purpose, k, sweep(self.found.subject, k), self.reference)
-        errors = {name: window_.errors[name] for name in ("stiffness", "first slip", "energy")}
+        errors = {name: e for name, e in window_.errors.items() if name in ("stiffness", "first slip", "energy")}
         assert window_.k.shape == k.shape  # none that the model cannot solve
         if self.case.purpose == STICK:
             loads = np.array([self.one_thickness(value) for value in (*k, np.inf)])

@@ -200,7 +200,7 @@ def test_sticking_asks_for_the_least_stiffness_that_serves() -> None:
     at_k = window("stick", np.array([k]), [response(found.subject, constant(k))], found.rigid)
     worst = max(e[0] for name, e in at_k.errors.items() if name in ("stiffness", "true slip", "energy", "load sharing"))
     assert worst == pytest.approx(0.05, rel=0.05)
-    assert isinstance(w, Window) and set(w.errors) == set(QUANTITIES)
+    assert isinstance(w, Window) and set(w.errors) == set(QUANTITIES) - {"first slip"}
 
 
 def test_purpose_chooses() -> None:
