@@ -18,6 +18,7 @@ _NAMES = {
     "check": ("slip.assess", "assess"),
     "check_table": ("slip.cases.run", "check_table"),
     "TableResult": ("slip.cases.run", "TableResult"),
+    "penalty": ("slip.stiffness.stage", "penalty"),
     "Joint": ("slip.joint.joint", "Joint"),
     "read_file": ("slip.read.build", "read"),
     "read_text": ("slip.read.build", "read_text"),

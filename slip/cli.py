@@ -37,7 +37,7 @@ def main(arguments: Sequence[str] | None = None) -> int:
         print(f"slip: {error}", file=sys.stderr)
         return FAULT
     except KeyboardInterrupt as interrupt:
-        print(f"slip: interrupted; {interrupt or 'nothing was written'}", file=sys.stderr)
+        print(f"slip: interrupted; {str(interrupt) or 'nothing was written'}", file=sys.stderr)
         return INTERRUPTED
     except Exception as error:  # a fault of ours must not look like one of the input
         said = f"a fault of the program, not of your input: {type(error).__name__}: {error} ({_place(error)})"

@@ -29,6 +29,7 @@ class Loads:
     names: pl.Series
     values: Array
     digest: str
+    asked: bool = False  # whether a table was named for it
 
     @classmethod
     def of(cls, joint: Joint, table: str | Path | None) -> Loads | None:
@@ -45,7 +46,8 @@ class Loads:
 
 
 def _of_table(joint: Joint, path: Path) -> Loads:
-    table = Table(path, joint)
+    on_joint = replace(joint, axial=replace(joint.axial, meaning="external"))  # what acts on the joint is external
+    table = Table(path, on_joint)
     if table.form.bolts:
         expected, remedy = "a table of joint loads", "give the bolt forces as TABLE"
         raise Problems(
@@ -54,12 +56,12 @@ def _of_table(joint: Joint, path: Path) -> Loads:
     names, values = [], []
     for chunk in table.chunks():
         frame, broken = chunk.rows(table.form)
-        found = read_rows(joint, table.form, frame, broken)
+        found = read_rows(on_joint, table.form, frame, broken)
         good = np.flatnonzero(found.block.open_reason == "")
         names.append(found.block.names.gather(good))
-        values.append(_sums(joint, found.block, False)[good])
+        values.append(_sums(on_joint, found.block, False)[good])
     digest = hashlib.sha256(path.read_bytes()).hexdigest()
-    return Loads(pl.concat(names), np.concatenate(values), digest)
+    return Loads(pl.concat(names), np.concatenate(values), digest, asked=True)
 
 
 def imbalance(joint: Joint, form: Form, block: Block, loads: Loads) -> tuple[tuple[float, str], int]:

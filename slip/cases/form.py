@@ -7,22 +7,18 @@ import io
 import re
 from collections.abc import Sequence
 
-from slip.base.errors import InputError, Problems
+from slip.base.errors import Problems
 from slip.base.notes import Note
 from slip.base.records import record
-from slip.base.units import KINDS, SYSTEMS, UnitError, parse_unit
+from slip.cases.header import columns_of, fault
 from slip.joint.joint import Joint
 from slip.read.document import cut
-from slip.read.reader import nearest, show
-from slip.read.table import BOLT_COLUMNS, COLUMNS, JOINT_COLUMNS, SHARED_COLUMNS
+from slip.read.table import COLUMNS
 
-HEADER = re.compile(r"\s*(.*?)\s*(?:[\[(]\s*([^\[\](]*?)\s*[\])])?\s*$", re.DOTALL)
 COMMA = re.compile(r"\s*[-+]?\d*,\d+([eE][-+]?\d+)?\s*$")
 POINT = re.compile(r"\s*[-+]?\d*\.\d*([eE][-+]?\d+)?\s*$")
 THOUSANDS = re.compile(r"[-+]?[1-9]\d{0,2},\d{3}$")  # may part thousands as well as decimals
 SAMPLE = 400  # rows in which the decimal sign is looked for
-UNITS = {"force": "N", "moment": "N mm", "number": ""}
-AXIS = "xyz"
 NOTHING = {
     "Fax": "no axial force",
     "Fz": "no axial force",
@@ -67,7 +63,12 @@ def csv_form(head: bytes, joint: Joint, file: str) -> Form:
         text = [line.decode("utf-8") for line in lines[blank : blank + SAMPLE]]
     except UnicodeDecodeError:
         text = [line.decode("latin-1") for line in lines[blank : blank + SAMPLE]]  # its rows are refused one by one
-    first = text[0].rstrip("\r")
+    text = [line.rstrip("\r") for line in text]
+    first = text[0]
+    if "\r" in first:
+        expected, write = "a line break after each row", "save the table with today's line ends"
+        raise _fault(file, blank + 1, "table-line-ends", "carriage returns in place of line breaks", expected, write)
+    text = [line.replace("\r", " ") for line in text]
     separator = ";" if first.count(";") > first.count(",") else ","
     if separator not in first and "\t" in first:
         expected = '"," or ";" between the cells'
@@ -78,7 +79,7 @@ def csv_form(head: bytes, joint: Joint, file: str) -> Form:
     if not filled:
         raise _fault(file, blank + 2, "table-empty", "a header and no rows", "rows below it", "write the table again")
     _no_cells_beyond(header, filled, separator, file, blank + 2)
-    columns = _columns(header, joint, file, blank + 1)
+    columns = columns_of(header, joint, file, blank + 1)
     comma = _decimal_comma(columns, filled, separator, joint, file, blank + 2)
     offset = start + sum(len(line) + 1 for line in lines[: blank + 1])
     between = f'"{separator}" between the cells, decimal {"comma" if comma else "point"}'
@@ -87,7 +88,7 @@ def csv_form(head: bytes, joint: Joint, file: str) -> Form:
 
 def parquet_form(header: Sequence[str], joint: Joint, file: str) -> Form:
     """The form of a Parquet table from the names of its columns."""
-    return _form(joint, file, header, _columns(header, joint, file, 0), "", False, 0, 1, "Parquet")
+    return _form(joint, file, header, columns_of(header, joint, file, 0), "", False, 0, 1, "Parquet")
 
 
 def _form(
@@ -103,13 +104,22 @@ def _form(
 ) -> Form:
     bolts = "bolt" in columns
     used = {position for position, _ in columns.values()}
-    carried = tuple((i, name.strip()) for i, name in enumerate(header) if i not in used and name.strip())
+    carried = _carried([(i, name.strip()) for i, name in enumerate(header) if i not in used and name.strip()])
     what = "forces of each bolt" if bolts else "loads of the joint"
     also = f"; carried through: {', '.join(cut(name, 20) for _, name in carried)}" if carried else ""
     said = f"{what}, {between}{also}"
     return Form(
         file, separator, comma, columns, carried, bolts, len(header), offset, line, said, _assumed(columns, bolts)
     )
+
+
+def _carried(columns: list[tuple[int, str]]) -> tuple[tuple[int, str], ...]:
+    """Columns that are carried through, each under a name of its own."""
+    kept: list[tuple[int, str]] = []
+    for position, name in columns:
+        same = sum(other == name or other.startswith(f"{name} (") for _, other in kept)
+        kept.append((position, f"{name} ({same + 1})" if same else name))
+    return tuple(kept)
 
 
 def _assumed(columns: dict[str, tuple[int, float]], bolts: bool) -> tuple[Note, ...]:
@@ -149,6 +159,13 @@ def _decimal_comma(
     commas = [cell.strip() for cell in cells if COMMA.match(cell)]
     points = sum(POINT.match(cell) is not None for cell in cells)
     if separator == "," or len(commas) <= points:
+        pointed = [cell.strip() for cell in cells if POINT.match(cell)]
+        if separator == ";" and pointed and all(THOUSANDS.match(cell.replace(".", ",")) for cell in pointed):
+            found, expected = f'numbers like "{pointed[0]}" alone', "one way to read them"
+            write = (
+                'write [table] decimal = "." in the joint file if that is a decimal point; else leave the points out'
+            )
+            raise _fault(file, line, "table-decimal", found, expected, write)
         return False
     if not points and all(THOUSANDS.match(cell) for cell in commas):
         found, expected = f'numbers like "{commas[0]}" alone', "one way to read them"
@@ -157,129 +174,5 @@ def _decimal_comma(
     return True
 
 
-def _columns(header: Sequence[str], joint: Joint, file: str, line: int) -> dict[str, tuple[int, float]]:
-    """Position and factor of our columns; the faults of the header together."""
-    theirs = {theirs: ours for ours, theirs in joint.table.columns.items()}
-    found: dict[str, tuple[int, float]] = {}
-    errors: list[InputError] = []
-    heads = [_head(cell, theirs, joint.table.columns) for cell in header]
-    bolts = any(name == "bolt" for name, _ in heads)
-    known = SHARED_COLUMNS | (BOLT_COLUMNS if bolts else JOINT_COLUMNS)
-    if bolts:  # of the components along the table's axes the two in the face; the third is no force that is known to pull the bolt
-        shear = needed(bolts, joint)[2:]
-        known = {name: kind for name, kind in known.items() if name not in ("Fx", "Fy")} | dict.fromkeys(shear, "force")
-    for position, (name, unit) in enumerate(heads):
-        if name not in known:
-            continue
-        if name in found:
-            errors.append(_one(file, line, "column-twice", f"two columns {name}", "one", "remove or rename one", name))
-            continue
-        try:
-            found[name] = position, _factor(name, known[name], unit, joint, file, line, header[position])
-        except Problems as problems:
-            errors += problems.errors
-    errors += _missing(found, header, bolts, joint, file, line, {e.key for e in errors})
-    if errors:
-        raise Problems(errors)
-    return found
-
-
-def _head(cell: str, theirs: dict[str, str], ours: object) -> tuple[str, str | None]:
-    """Our name of a column, or its own, and its unit, None where the header has none."""
-    match = HEADER.match(cell)
-    name, unit = match.groups() if match else (cell.strip(), None)
-    if cell.strip() in theirs:
-        return theirs[cell.strip()], unit
-    if name in theirs:
-        return theirs[name], unit
-    taken = isinstance(ours, dict) and name in ours  # the file names another column for this one
-    return ("" if taken else name), unit
-
-
-def _factor(name: str, kind: str, unit: str | None, joint: Joint, file: str, line: int, cell: str) -> float:
-    """Factor of a column to inside units."""
-    if kind in ("", "number"):
-        return 1.0
-    system = joint.table.units
-    if unit is None:
-        if system is None:
-            expected = f"the unit of a {kind} in the header"
-            write = f'write {name}[{UNITS[kind]}], or [table] units = "N mm" or "lbf in" in the joint file'
-            raise Problems([_one(file, line, "unit-missing", show(cell), expected, write, name)])
-        return system.factor(KINDS[kind])
-    try:
-        factor, dimension = parse_unit(unit)
-    except UnitError as error:
-        raise Problems([_one(file, line, error.code, show(cell), error.expected, error.remedy, name)]) from None
-    if dimension != KINDS[kind]:
-        write = f"write for instance {name}[{UNITS[kind]}]"
-        raise Problems([_one(file, line, "unit-wrong", show(cell), f"the unit of a {kind}", write, name)])
-    return factor
-
-
-def needed(bolts: bool, joint: Joint) -> tuple[str, ...]:
-    """Columns that a table must have."""
-    shear = tuple(f"F{AXIS[axis]}" for axis, _ in joint.table.axes[:2])
-    return ("case", "bolt", *shear) if bolts else ("case", *shear)
-
-
-def _missing(
-    found: dict[str, tuple[int, float]],
-    header: Sequence[str],
-    bolts: bool,
-    joint: Joint,
-    file: str,
-    line: int,
-    wrong: set[str],
-) -> list[InputError]:
-    """Faults of columns that are needed and not there, and of what the joint file must say for those that are."""
-    errors = []
-    absent = [name for name in needed(bolts, joint) if name not in found and name not in wrong]
-    if absent:
-        taken = {position for position, _ in found.values()}
-        free = [_head(cell, {}, ())[0] for i, cell in enumerate(header) if i not in taken]
-        close = {name: nearest(name, free) for name in absent}
-        pairs = ", ".join(f'{name} = "{theirs or ".."}"' for name, theirs in close.items())
-        write = f"add it, or name it in the joint file: [table] columns = {{ {pairs} }}"
-        expected = f"a header with {', '.join(absent)}"
-        errors.append(_one(file, line, "missing-column", cut(", ".join(header), 60), expected, write, absent[0]))
-    if bolts and not {"Fax", "Fclamp"} & found.keys():
-        along = f"F{AXIS[joint.table.axes[2][0]]}"
-        names = {
-            _head(cell, {theirs: ours for ours, theirs in joint.table.columns.items()}, joint.table.columns)[0]
-            for cell in header
-        }
-        if along in names:
-            expected = "the axial force as Fax, tension positive, with its meaning"
-            write = f'write [table] columns = {{ Fax = "{along}" }} and [axial] meaning, or take the column out'
-            errors.append(
-                _one(file, line, "axial-not-named", f"{along} along the bolts and no Fax", expected, write, along)
-            )
-    if "Fax" in found and joint.axial.meaning is None:
-        write = 'add [axial] meaning = "external", "bolt force" or "bolt force change" to the joint file'
-        errors.append(
-            _one(file, line, "missing-key", "Fax and no [axial] meaning", "what an axial force is", write, "Fax")
-        )
-    if "Fclamp" in found and joint.axial.model_preload is None:
-        write = 'add [axial] model_preload = "90 kN" to the joint file'
-        expected = "the preload in the model that the contact force has fallen from"
-        errors.append(_one(file, line, "missing-key", "Fclamp and no model_preload", expected, write, "Fclamp"))
-    on_joint = joint.axial.meaning in ("bolt force", "bolt force change") and not bolts
-    if on_joint and any(name in found for name in ("Fz", "Mx", "My")):
-        found_, expected = f'meaning = "{joint.axial.meaning}"', "an external axial force on the joint"
-        write = 'give a table of bolt forces, or meaning = "external"'
-        errors.append(_one(file, line, "meaning-on-joint", found_, expected, write, "Fz"))
-    return errors
-
-
-def _one(file: str, line: int, code: str, found: str, expected: str, remedy: str, key: str = "") -> InputError:
-    return InputError(code, key, found, expected, remedy, file, line)
-
-
 def _fault(file: str, line: int, code: str, found: str, expected: str, remedy: str) -> Problems:
-    return Problems([_one(file, line, code, found, expected, remedy)])
-
-
-def unit_of(kind: str, name: str) -> str:
-    """The unit of a kind of quantity in a system, for headers."""
-    return SYSTEMS[name].unit(kind)
+    return Problems([fault(file, line, code, found, expected, remedy)])

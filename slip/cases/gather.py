@@ -10,6 +10,7 @@ import polars as pl
 
 from slip.cases.parse import LINE, Broken
 from slip.cases.stream import CHUNK, ROWS, Chunk, Table
+from slip.cases.write import told
 
 LARGEST_PART = 8 * CHUNK  # bytes of a CSV that are sorted in memory
 LARGEST_ROWS = 8 * ROWS
@@ -38,16 +39,19 @@ def gathered(table: Table, size: int = 0) -> Iterator[Chunk]:
 def _distribute(table: Table, folder: Path, parts: int) -> list[Broken]:
     """Write the rows to files, those of a case always to the same part; what is no row comes back."""
     broken: list[Broken] = []
+    table.rows = 0
     position, _ = table.form.columns["case"]
     for number, chunk in enumerate(table.chunks()):
         frame, lost = chunk.rows(table.form)
         broken += lost
+        table.rows += frame.height + len(lost)
         case = pl.col(str(position)).str.strip_chars()
         frame = frame.with_columns(case.alias(CASE)).with_columns((pl.col(CASE).hash() % parts).alias(PART))
-        for (part,), rows in frame.group_by(PART, maintain_order=True):
-            place = folder / str(part)
-            place.mkdir(exist_ok=True)
-            rows.write_ipc(place / f"{number:06d}.arrow")
+        with told(folder):
+            for (part,), rows in frame.group_by(PART, maintain_order=True):
+                place = folder / str(part)
+                place.mkdir(exist_ok=True)
+                rows.write_ipc(place / f"{number:06d}.arrow")
     return broken
 
 

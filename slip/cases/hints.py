@@ -16,7 +16,7 @@ CLOSE = 0.3  # axial values whose mean lies this near to the preload, in parts o
 UNBALANCED = 0.02  # part of the load by which bolt forces may miss it without a warning
 
 
-def hints(ready: Prepared, form: Form, summary: Summary, grown: int) -> Iterator[Note]:
+def hints(ready: Prepared, form: Form, summary: Summary, grown: int, loads: bool) -> Iterator[Note]:
     """Warnings of a finished run."""
     yield from warnings(ready.joint, ready.assembly, summary.highest)
     yield from _axial(ready, summary)
@@ -24,6 +24,10 @@ def hints(ready: Prepared, form: Form, summary: Summary, grown: int) -> Iterator
     if share > UNBALANCED:
         text = f"bolt forces miss the joint's load by {share:.1%} in {case}, the worst of {summary.balanced} cases compared"
         yield Note("table-unbalanced", text, "table")
+    if loads and not summary.balanced:
+        yield Note(
+            "table-unbalanced", "no case of the loads has bolt forces that could be added up against it", "table"
+        )
     if summary.refused:
         text = f"rows refused: {summary.refused}; their cases are not judged"
         yield Note("table-rows-refused", text, "table")

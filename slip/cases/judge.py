@@ -24,6 +24,7 @@ from slip.verdict.stage import not_solved
 
 Array = np.ndarray
 NOT_PROVEN = "the group factor could not be proven"
+OVER = "preload_low is above the highest preload of the joint file"
 TILTED = "a tilting moment that the pattern cannot carry"
 
 
@@ -145,6 +146,9 @@ def _judged(ready: Prepared, turning: bool, block: Block, bolts: bool) -> Judged
     what = acting(joint, block, bolts)
     tilted = np.unique(what.case[not_carried(joint, what)])
     block.open_reason[tilted] = TILTED
+    if what.preload_low is not None:
+        over = (what.preload_low > ready.assembly.high * (1 + 1e-9)).any(axis=1)
+        block.open_reason[np.unique(what.case[over])] = OVER
     states = shared(joint, what, Trace(keep=False))
     found = ledger(joint, ready.assembly, states, [], keep=False)
     slipping = slip(joint, states, found, pressed, keep=False)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import csv
 import io
+import re
 from collections.abc import Iterator
 
 import polars as pl
@@ -12,6 +13,7 @@ from slip.base.records import record
 from slip.cases.form import Form
 
 EXTRA, LINE = "extra", "line"
+BEYOND = 8  # cells after those of the header that are looked at
 LONGEST_ROW = 50  # lines that one row may take through line breaks between quotes
 NOT_UTF8, NOT_CSV = "bytes that are not UTF-8", "a quotation mark that is not closed"
 
@@ -31,7 +33,8 @@ def parse(data: bytes, form: Form, line: int) -> tuple[pl.DataFrame, list[Broken
     data: whole lines of the table without its header, the first at `line`. A cell that is empty is null.
     """
     names = [*(str(i) for i in range(form.width)), EXTRA]
-    head = form.separator.join(names).encode() + b"\n"
+    more = [f"{EXTRA}{i}" for i in range(BEYOND)]
+    head = form.separator.join([*names[:-1], *more]).encode() + b"\n"
     try:
         frame = pl.read_csv(
             io.BytesIO(head + data),
@@ -40,11 +43,21 @@ def parse(data: bytes, form: Form, line: int) -> tuple[pl.DataFrame, list[Broken
             truncate_ragged_lines=True,
             raise_if_empty=False,
         )
+        if b'"' in data and _swallowed(frame, form):
+            raise pl.exceptions.ComputeError("a quotation mark swallows rows")
         broken: list[Broken] = []
-        frame = frame.with_columns(_lines(frame, data, line))
+        lines = _lines(frame, data, line)
+        frame = frame.select(*names[:-1], pl.coalesce(more).alias(EXTRA)).with_columns(lines)
     except (pl.exceptions.ComputeError, pl.exceptions.SchemaError):
         frame, broken = _by_hand(data, form, line, names)
     return frame.filter(~pl.all_horizontal(pl.col(names).is_null())), broken
+
+
+def _swallowed(frame: pl.DataFrame, form: Form) -> bool:
+    """Whether any cell holds what looks like a whole row: two stray quotation marks take all between them for one cell."""
+    many = f"\n(?:[^\n]*{re.escape(form.separator)}){{{max(form.width - 1, 1)}}}"
+    found = frame.select(pl.any_horizontal(pl.all().str.contains(many).fill_null(False).any())).item()
+    return bool(found)
 
 
 def _lines(frame: pl.DataFrame, data: bytes, line: int) -> pl.Series:
@@ -61,7 +74,7 @@ def _by_hand(data: bytes, form: Form, line: int, names: list[str]) -> tuple[pl.D
     rows: list[tuple[str | None, ...]] = []
     lines: list[int] = []
     broken: list[Broken] = []
-    for at, text, reason in _records(data, line):
+    for at, text, reason in _records(data, line, form.separator.encode(), form.width):
         cells = None if reason else next(csv.reader(io.StringIO(text, newline=""), delimiter=form.separator), [])
         if cells is None:
             broken.append(Broken(at, reason, text))
@@ -74,12 +87,14 @@ def _by_hand(data: bytes, form: Form, line: int, names: list[str]) -> tuple[pl.D
     return frame.with_columns(pl.Series(LINE, lines, dtype=pl.Int64)), broken
 
 
-def _records(data: bytes, line: int) -> Iterator[tuple[int, str, str]]:
+def _records(data: bytes, line: int, separator: bytes, width: int) -> Iterator[tuple[int, str, str]]:
     """Line, text and fault ('' for none) of each row; a quotation mark that is never closed spoils its own line alone."""
     pending = data.split(b"\n")
     at = 0
     while at < len(pending):
         taken = next((n for n in range(1, LONGEST_ROW) if b"\n".join(pending[at : at + n]).count(b'"') % 2 == 0), None)
+        if taken and any(row.count(separator) >= width - 1 for row in pending[at + 1 : at + taken]):
+            taken = None  # whole rows between two quotation marks: the first of them is astray
         raw = b"\n".join(pending[at : at + (taken or 1)])
         try:
             text, reason = raw.decode("utf-8").rstrip("\r"), "" if taken else NOT_CSV

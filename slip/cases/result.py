@@ -9,8 +9,8 @@ from slip.base.records import record
 from slip.base.units import System
 from slip.cases.candidates import ENDS
 from slip.cases.form import Form
-from slip.cases.judge import Judged
-from slip.cases.rows import Block
+from slip.cases.judge import NOT_PROVEN, OVER, TILTED, Judged
+from slip.cases.rows import NAMELESS, ONE_END, REFUSED_END, Block
 from slip.joint.joint import Joint
 from slip.verdict.stage import HOLDS
 
@@ -86,7 +86,7 @@ def known_bolts(block: Block, judged: Judged, n: int) -> Array:
     return found
 
 
-UNUSABLE = ("a tilting moment that the pattern cannot carry", "the group factor could not be proven")
+UNUSABLE = (TILTED, NOT_PROVEN, OVER, REFUSED_END, NAMELESS, ONE_END)  # reasons that leave a bolt without an answer too
 
 
 def _carried(form: Form, frame: pl.DataFrame, block: Block, m: int, n: int) -> list[pl.Series]:
@@ -97,20 +97,20 @@ def _carried(form: Form, frame: pl.DataFrame, block: Block, m: int, n: int) -> l
     rows = np.column_stack([block.rows, none]) if form.bolts else np.broadcast_to(block.rows, (block.count, m))
     places = pl.Series(rows.ravel())
     places = pl.select(pl.when(places >= 0).then(places)).to_series()
-    return [frame[str(position)].gather(places).alias(_free(name)) for position, name in form.carried]
+    made: list[pl.Series] = []
+    for position, name in form.carried:
+        own = _free(name, {series.name for series in made})
+        made.append(frame[str(position)].gather(places).alias(own))
+    return made
 
 
-def _free(name: str) -> str:
-    """A carried name that is none of the result's own."""
-    own = (
-        "end",
-        "safety",
-        "load_factor",
-        "required",
-        "reserve_factor",
-        "open",
-        "holds",
-        "separation_factor",
-        "case_holds",
-    )
-    return f"{name} (table)" if name in own or name.partition("[")[0] in ("clamp_low", "clamp_high", "shear") else name
+OWN = ("end", "safety", "load_factor", "required", "reserve_factor", "open", "holds", "separation_factor", "case_holds")
+
+
+def _free(name: str, taken: set[str]) -> str:
+    """A carried name that is none of the result's own, and none that is taken."""
+    if name in OWN or name.partition("[")[0] in ("clamp_low", "clamp_high", "shear"):
+        name = f"{name} (table)"
+    while name in taken:
+        name = f"{name} (table)"
+    return name

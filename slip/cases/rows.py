@@ -8,6 +8,7 @@ import numpy as np
 import polars as pl
 
 from slip.base.records import record
+from slip.cases.agree import contradictions, second_rows
 from slip.cases.form import Form
 from slip.cases.parse import EXTRA, LINE, Broken
 from slip.joint.joint import Joint
@@ -21,6 +22,12 @@ REFUSED = {LINE: pl.Int64, "case": pl.String, REASON: pl.String, "text": pl.Stri
 NOT_NEGATIVE = ("thermal", "preload_low", "Fclamp")
 # Optional numbers: an empty cell says that the joint file's own value counts.
 MAY_BE_EMPTY = ("ratio", "thermal", "preload_low")
+
+
+REFUSED_ROW = "a row is refused"
+REFUSED_END = "a row is refused, and with it perhaps an end"
+NAMELESS = "a row without a case that can be read stands beside it"
+ONE_END = "a bolt force that holds the preload needs rows for both ends"
 
 
 class Scattered(Exception):
@@ -73,7 +80,8 @@ def read_rows(joint: Joint, form: Form, frame: pl.DataFrame, broken: list[Broken
     names = named.filter(pl.col("run") != pl.col("run").shift(1, fill_value=-1)).select("case", LINE)
     if names["case"].n_unique() < names.height:
         raise Scattered
-    block, late = _block(joint, form, named, names)
+    lost = [*cells.filter(pl.col("case").is_null())[LINE].to_list(), *(one.line for one in broken)]
+    block, late = _block(joint, form, named, names, np.array(lost, dtype=np.int64))
     wrong = pl.concat([cells.filter(pl.col(REASON) != ""), late], how="diagonal")
     refused = _refused(form, wrong.select(LINE, "case", REASON), frame, broken)
     return Read(block, refused, count)
@@ -141,12 +149,19 @@ def _wrong(form: Form, numbers: dict[str, float]) -> Iterator[tuple[pl.Expr, lis
             yield ~pl.col(name).is_in(known), words(f"{name} is neither {' nor '.join(known)}: ", name)
 
 
-def _block(joint: Joint, form: Form, named: pl.DataFrame, names: pl.DataFrame) -> tuple[Block, pl.DataFrame]:
-    """Good rows in arrays, and those that are refused since they do not fit with the other rows of their case."""
+def _block(
+    joint: Joint, form: Form, named: pl.DataFrame, names: pl.DataFrame, lost: Array
+) -> tuple[Block, pl.DataFrame]:
+    """Good rows in arrays, and those that are refused since they do not fit with the other rows of their case.
+
+    lost: lines of rows whose case cannot be read; they may belong to the cases before and behind them.
+    """
     C, n = names.height, joint.pattern.count if form.bolts else 1
     reasons = np.full(C, "", dtype=object)
     bad = named.filter(pl.col(REASON) != "")
-    reasons[bad["run"].to_numpy()] = "a row is refused"
+    refusal = REFUSED_END if "end" in form.columns else REFUSED_ROW
+    reasons[bad["run"].to_numpy()] = refusal
+    reasons[_beside(named, lost)] = NAMELESS
     good = named.filter(pl.col(REASON) == "")
     case, bolt = good["run"].to_numpy(), good["place_of"].to_numpy()
     end = (
@@ -154,10 +169,10 @@ def _block(joint: Joint, form: Form, named: pl.DataFrame, names: pl.DataFrame) -
         if "end" in form.columns
         else np.zeros_like(case)
     )
-    late = _second_rows(good, (case * 2 + end) * n + bolt) + _contradictions(form, good, case, reasons)
+    late = second_rows(good, (case * 2 + end) * n + bolt) + contradictions(form, good, case, reasons)
     if late:
         refused = pl.concat([good[rows].with_columns(pl.lit(said).alias(REASON)) for rows, said in late])
-        reasons[refused["run"].to_numpy()] = "a row is refused"
+        reasons[refused["run"].to_numpy()] = refusal
         keep = np.setdiff1d(np.arange(good.height), np.concatenate([rows for rows, _ in late]))
         good, case, bolt, end = good[keep], case[keep], bolt[keep], end[keep]
     else:
@@ -173,14 +188,16 @@ def _block(joint: Joint, form: Form, named: pl.DataFrame, names: pl.DataFrame) -
     _incomplete(joint, form, reasons, rows, second, other_rows)
     if joint.axial.meaning == "bolt force" and "Fax" in form.columns:
         one_end = alternating & ~np.isin(np.arange(C), second) & (reasons == "")
-        reasons[one_end] = "a bolt force that holds the preload needs rows for both ends"
+        reasons[one_end] = ONE_END
+    present = rows >= 0
+    present[second] &= other_rows >= 0  # a bolt without a row for one of its ends has no answer
     block = Block(
         names=names["case"],
         lines=names[LINE].to_numpy(),
         given=_filled(form, good, rows),
         other=_filled(form, good, other_rows),
         second=second,
-        present=rows >= 0,
+        present=present,
         rows=np.where(rows >= 0, good["place"].to_numpy()[rows] if good.height else -1, -1),
         alternating=alternating,
         ratio=ratio,
@@ -190,49 +207,13 @@ def _block(joint: Joint, form: Form, named: pl.DataFrame, names: pl.DataFrame) -
     return block, refused
 
 
-def _second_rows(good: pl.DataFrame, key: Array) -> list[tuple[Array, str]]:
-    """Rows whose case, bolt and end have a row already."""
-    if not key.size or np.bincount(key).max() < 2:
-        return []
-    _, first = np.unique(key, return_index=True)
-    return [(np.setdiff1d(np.arange(len(key)), first), "a second row for this case, bolt and end")]
-
-
-def _contradictions(form: Form, good: pl.DataFrame, case: Array, reasons: Array) -> list[tuple[Array, str]]:
-    """Rows whose kind or ratio is not that of the first row of their case, or goes against its other end."""
-    found = []
-    for name in ("kind", "ratio"):
-        if name in form.columns and good.height:
-            column = good[name].fill_null("")
-            first = column.gather(_first_of(case))
-            wrong = np.flatnonzero((column != first).to_numpy())
-            found.append((wrong, f"{name} is not that of the first row of the case"))
-    if "end" in form.columns and good.height:
-        two = np.isin(case, case[(good["end"] == "other").fill_null(False).to_numpy()])
-        if "ratio" in form.columns:
-            found.append(
-                (np.flatnonzero(two & good["ratio"].is_not_null().to_numpy()), "a ratio and rows for the other end")
-            )
-        if "kind" in form.columns:
-            static = (good["kind"] == "static").fill_null(False).to_numpy()
-            found.append((np.flatnonzero(two & static), "kind static and rows for the other end"))
-    if {"kind", "ratio"} <= form.columns.keys() and good.height:
-        static = ((good["kind"] == "static") & good["ratio"].is_not_null()).fill_null(False).to_numpy()
-        found.append((np.flatnonzero(static), "kind static and a ratio"))
-    taken: Array = np.empty(0, dtype=np.int64)
-    result = []
-    for rows, said in found:
-        rows = np.setdiff1d(rows, taken)
-        taken = np.union1d(taken, rows)
-        if rows.size:
-            result.append((rows, said))
-    return result
-
-
-def _first_of(case: Array) -> Array:
-    """Index of the first row of each row's case; cases stand together."""
-    starts = np.flatnonzero(np.diff(case, prepend=-1))
-    return np.repeat(starts, np.diff(np.append(starts, len(case))))
+def _beside(named: pl.DataFrame, lost: Array) -> Array:
+    """Cases of the rows just before and just behind some lines, by their runs."""
+    if not lost.size or not named.height:
+        return np.empty(0, dtype=np.int64)
+    lines, runs = named[LINE].to_numpy(), named["run"].to_numpy()
+    behind = np.searchsorted(lines, lost)
+    return np.unique(runs[np.clip(np.concatenate([behind - 1, behind]), 0, len(runs) - 1)])
 
 
 def _kinds(form: Form, good: pl.DataFrame, case: Array, C: int) -> tuple[Array, Array]:

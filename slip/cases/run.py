@@ -10,6 +10,7 @@ import numpy as np
 
 from slip.base.errors import InputError, Problems
 from slip.base.notes import Note
+from slip.base.paths import refuse_overwriting
 from slip.base.progress import Progress
 from slip.base.records import record
 from slip.base.units import System
@@ -18,11 +19,12 @@ from slip.cases.form import Form
 from slip.cases.gather import gathered
 from slip.cases.hints import hints
 from slip.cases.judge import Prepared, prepare
+from slip.cases.marks import Marks
 from slip.cases.result import Wanted
 from slip.cases.rows import REFUSED, Scattered
 from slip.cases.stream import Table
 from slip.cases.summary import Summary
-from slip.cases.work import Done, Job, header, in_order
+from slip.cases.work import Done, Job, header, in_order, is_refused
 from slip.cases.write import Checkpoint, Output, Style, encoded, style
 from slip.joint.contact import PressedContact, PressedFace
 from slip.joint.joint import Joint
@@ -103,6 +105,12 @@ def check_table(
     source = Table(Path(table), found)
     target = None if out is None else Path(out)
     lost = Path(refused) if refused else _beside(source.path, target)
+    if lost.exists() and not refused and not is_refused(lost):
+        remedy = "name another with --refused, or move it away"
+        expected = "a free name for the rows that are refused"
+        raise Problems(
+            [InputError("file-exists", "--refused", "a file of something else", expected, remedy, str(lost))]
+        )
     others = (Path(found.file), Path(loads) if loads else None)
     refuse_overwriting({"--out": target, "--refused": lost}, (source.path, *others))
     how = style(target, source.form.separator, source.form.comma)
@@ -116,18 +124,6 @@ def check_table(
 def _beside(table: Path, out: Path | None) -> Path:
     """Where refused rows go: beside the result, or in the working directory under the table's name."""
     return out.with_name(f"{out.stem}.refused.csv") if out else Path(f"{table.stem}.refused.csv")
-
-
-def refuse_overwriting(written: dict[str, Path | None], inputs: Iterable[Path | None]) -> None:
-    """Raise Problems where a file that is written is an input, or where two that are written are one; keys: the options."""
-    taken = {path.resolve(): "an input file" for path in inputs if path is not None}
-    for option, path in written.items():
-        if path is None:
-            continue
-        if (found := taken.get(path.resolve())) is not None:
-            remedy = "choose another name"
-            raise Problems([InputError("report-over-input", option, found, "a path of its own", remedy, str(path))])
-        taken[path.resolve()] = f"the file of {option}"
 
 
 def _refuse_unknown(joint: Joint, wanted: Wanted) -> None:
@@ -151,7 +147,7 @@ class _Run:
         self.seen = (
             Output(out.with_name(f"{out.name}.seen"), Style("csv")) if out else None
         )  # marks of the cases so far
-        self.marks = np.empty(0, dtype=np.uint64)
+        self.marks = Marks()
         self.gathering = False
 
     def all(
@@ -171,8 +167,10 @@ class _Run:
         return self._finished()
 
     def _begin(self, gathering: bool = False) -> None:
-        self.summary, self.marks = Summary(self.summary.bolts), self.marks[:0]
+        self.summary, self.marks = Summary(self.summary.bolts), Marks()
         self.gathering = gathering
+        if gathering or self.table.parquet:
+            self.table.read_whole()
         self.lost.begin()
         if self.checkpoint:
             self.checkpoint.remove()
@@ -190,12 +188,13 @@ class _Run:
         )
         for done in in_order(self.job, chunks, executor, ahead):
             if not self.gathering:
-                if np.isin(done.marks, self.marks).any():
+                if self.marks.has_any(done.marks):
                     raise Scattered
-                self.marks = np.union1d(self.marks, done.marks)
+                self.marks.add(done.marks)
             self._keep(done)
             if progress:
-                progress(min(done.until, self.table.total), self.table.total)
+                done_rows = self.summary.rows, self.table.rows
+                progress(*(done_rows if self.gathering else (min(done.until, self.table.total), self.table.total)))
 
     def _keep(self, done: Done) -> None:
         """Write one chunk and remember how far the run has come."""
@@ -240,10 +239,11 @@ class _Run:
                 [InputError("resume-without-out", "--resume", "no --out", "the result to go on with", remedy)]
             )
         state = self.checkpoint.load()
+        whole = self.table.parquet or state["gathering"]
         same = {
             "the joint file": state["input"] == self.job.ready.joint.digest,
             "the table": state["size"] == self.table.size
-            and (self.table.parquet or state["gathering"] or self.table.read_before(state["until"]) == state["table"]),
+            and (self.table.read_whole() if whole else self.table.read_before(state["until"])) == state["table"],
             "what was asked for": state["asked"] == self._asked(),
         }
         changed = [name for name, is_same in same.items() if not is_same]
@@ -258,11 +258,11 @@ class _Run:
         self.writer.begin(state["out"])
         self.lost.begin(state["refused"])
         self.seen.begin(state["seen"])
-        self.marks = np.unique(np.fromfile(self.seen.partial, dtype=np.uint64))
+        self.marks.add(np.fromfile(self.seen.partial, dtype=np.uint64))
         return state["until"], state["line"]
 
     def _kept(self) -> str:
-        if self.writer and self.writer.size:
+        if self.writer and self.writer.size and self.summary.cases:
             return f"{self.summary.cases} cases are in {self.writer.partial}; go on with --resume"
         return "nothing was written"
 
@@ -275,13 +275,18 @@ class _Run:
             self.lost.finish()
         else:
             self.lost.discard()
+            if is_refused(self.refused):  # of an earlier run
+                self.refused.unlink()
         if self.checkpoint and self.seen:
             self.seen.discard()
             self.checkpoint.remove()
         grown = self.table.grown
-        if self.table.parquet:
-            self.table.read_before(self.table.size)
-        warnings = (*joint.warnings, *hints(self.job.ready, self.table.form, summary, grown))
+        warnings = (
+            *joint.warnings,
+            *hints(
+                self.job.ready, self.table.form, summary, grown, self.job.loads is not None and self.job.loads.asked
+            ),
+        )
         code = NOT_SOLVED if grown and summary.code == 0 else summary.code
         assumptions = (*joint.assumptions, *self.job.ready.assembly.assumptions, *self.table.form.assumptions)
         return TableResult(

@@ -22,6 +22,7 @@ CHUNK = 8_000_000  # bytes of a CSV worked on together, some 150 000 rows
 ROWS = 150_000  # of a Parquet table
 HEAD = 1_000_000  # bytes in which the header and the first rows must stand
 PARQUET = b"PAR1"
+BROKEN = (pl.exceptions.PolarsError, pl.exceptions.PanicException)  # what the library says of a damaged table
 
 
 @record(eq=False)
@@ -43,6 +44,8 @@ class Table:
 
     def __init__(self, path: Path, joint: Joint) -> None:
         self.path, self.file = path, str(path)
+        self.rows = 0  # counted where they have to be gathered
+        self.follow = True  # whether the digest grows as the table is read
         head = self._head()
         self.parquet = head[:4] == PARQUET
         self.size = path.stat().st_size
@@ -50,9 +53,11 @@ class Table:
         if self.parquet:
             try:
                 scan = pl.scan_parquet(path)
-                self.form = parquet_form(list(scan.collect_schema()), joint, self.file)
+                schema = scan.collect_schema()
+                _refuse_nested(schema, self.file)
+                self.form = parquet_form(list(schema), joint, self.file)
                 self.total = int(scan.select(pl.len()).collect().item())
-            except pl.exceptions.PolarsError as error:
+            except BROKEN as error:
                 raise refuse(
                     "table-broken", self.file, first_line(error), "a Parquet table", "write it again"
                 ) from None
@@ -77,6 +82,9 @@ class Table:
 
     def _head(self) -> bytes:
         try:
+            if self.path.exists() and not self.path.is_file():
+                expected, remedy = "a file that can be read twice", "write the table to a file first"
+                raise refuse("file-unreadable", self.file, "no regular file", expected, remedy)
             with open(self.path, "rb") as file:
                 return file.read(HEAD)
         except FileNotFoundError:
@@ -94,6 +102,10 @@ class Table:
                 yield from self._of_rows(start, size or ROWS)
             else:
                 yield from self._of_bytes(start or self.form.offset, line or self.form.line, size or CHUNK)
+        except BROKEN as error:
+            raise refuse(
+                "table-broken", self.file, first_line(error), "the rest of a Parquet table", "write it again"
+            ) from None
         except OSError as error:
             reason = (error.strerror or str(error)).lower()
             remedy = "bring the table back and go on with --resume"
@@ -110,10 +122,19 @@ class Table:
                 start -= len(data)
         return self.digest
 
+    def read_whole(self) -> str:
+        """Digest of the whole table, for one that is read in no order that a digest could follow."""
+        self.follow = False
+        return self.read_before(self.size)
+
+    def _note(self, data: bytes) -> None:
+        if self.follow:
+            self._digest.update(data)
+
     def _of_bytes(self, start: int, line: int, size: int) -> Iterator[Chunk]:
         with open(self.path, "rb") as file:
             if start <= self.form.offset:
-                self._digest.update(file.read(start))
+                self._note(file.read(start))
             file.seek(start)
             kept, left = b"", self.size - start
             while left > 0:
@@ -124,7 +145,7 @@ class Table:
                 if not end:
                     continue  # one case fills the whole chunk: read on
                 data, kept = kept[:end], kept[end:]
-                self._digest.update(data)
+                self._note(data)
                 start += end
                 yield Chunk(data, line, start)
                 line += data.count(b"\n")
@@ -185,6 +206,16 @@ def _row_ends(data: bytes) -> np.ndarray[Any, np.dtype[np.int64]]:
     return breaks
 
 
-def first_line(error: Exception) -> str:
+def _refuse_nested(schema: pl.Schema, file: str) -> None:
+    """Lists, structures and raw bytes have no text to be carried through."""
+    for name, kind in schema.items():
+        if kind.is_nested() or kind in (pl.Binary, pl.Object, pl.Duration):
+            expected = "columns of numbers, texts, dates or flags"
+            raise refuse(
+                "table-column-kind", file, f"{name} of kind {kind}", expected, "leave the column out of the table"
+            )
+
+
+def first_line(error: BaseException) -> str:
     """The first line of a library's error."""
     return str(error).strip().split("\n")[0][:120]

@@ -5,6 +5,7 @@ from __future__ import annotations
 from collections import deque
 from collections.abc import Iterator
 from concurrent.futures import Executor, Future
+from pathlib import Path
 
 import numpy as np
 import polars as pl
@@ -15,7 +16,7 @@ from slip.cases.form import Form
 from slip.cases.judge import Prepared, judge
 from slip.cases.parse import EXTRA, LINE
 from slip.cases.result import Wanted, result
-from slip.cases.rows import read_rows
+from slip.cases.rows import REFUSED, read_rows
 from slip.cases.stream import Chunk
 from slip.cases.summary import Summary, summed
 from slip.cases.write import Style, encoded
@@ -89,3 +90,12 @@ def in_order(job: Job, chunks: Iterator[Chunk], executor: Executor | None, ahead
     finally:
         for future in waiting:
             future.cancel()
+
+
+def is_refused(path: Path) -> bool:
+    """Whether a file is one of refused rows, which a new run may replace."""
+    try:
+        with open(path, encoding="utf-8") as file:
+            return file.readline().rstrip("\n") == ",".join(REFUSED)
+    except (OSError, ValueError):
+        return False

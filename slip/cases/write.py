@@ -59,7 +59,7 @@ class Output:
     def begin(self, size: int = 0) -> None:
         """Start anew, or go on behind the first `size` bytes or pieces."""
         self.size = size
-        with _told(self.partial):
+        with told(self.partial):
             if not size:
                 self.discard()
             elif self.how.kind == "parquet":
@@ -73,7 +73,7 @@ class Output:
 
     def add(self, data: bytes) -> None:
         """Write one chunk; all of it or, when that fails, none that counts."""
-        with _told(self.partial):
+        with told(self.partial):
             if self.how.kind == "parquet":
                 self.partial.mkdir(exist_ok=True)
                 (self.partial / f"{self.size:06d}.parquet").write_bytes(data)
@@ -87,7 +87,7 @@ class Output:
 
     def finish(self) -> None:
         """Give the result its name."""
-        with _told(self.path):
+        with told(self.path):
             if self.how.kind != "parquet":
                 self.partial.replace(self.path)
                 return
@@ -113,7 +113,7 @@ class Checkpoint:
     def save(self, state: dict[str, Any]) -> None:
         """Replace what is there by a new state."""
         beside = self.path.with_name(f"{self.path.name}.part")
-        with _told(self.path):
+        with told(self.path):
             beside.write_text(json.dumps(state), encoding="utf-8")
             beside.replace(self.path)
 
@@ -134,7 +134,7 @@ class Checkpoint:
         self.path.unlink(missing_ok=True)
 
 
-class _told:
+class told:
     """An error of the disk, as one sentence that says what is kept."""
 
     def __init__(self, path: Path) -> None:
@@ -146,6 +146,6 @@ class _told:
     def __exit__(self, kind: Any, error: BaseException | None, trace: Any) -> None:
         if isinstance(error, (OSError, pl.exceptions.PolarsError)):
             reason = (getattr(error, "strerror", None) or str(error)).strip().split("\n")[0].lower()
-            remedy = "make room or choose another place; finished chunks are kept, --resume goes on behind them"
+            remedy = "make room or choose another place; --resume goes on behind what is finished, if anything is"
             expected = "a path that can be written"
             raise Problems([InputError("not-written", "", reason, expected, remedy, str(self.path))]) from None

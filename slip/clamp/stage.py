@@ -134,10 +134,13 @@ def _relief(joint: Joint, assembly: Assembly, loaded: States, without: Array, tr
         name = "axial relief, from the contact force" + (", compression credited" if credited else "")
         function = working.contact_relief_credited if credited else working.contact_relief
         relief = trace(name, function, F_0=joint.axial.model_preload, F_c=loaded.contact)
-        if loaded.axial.any():
-            return relief, loaded.axial
-        name = "external axial force behind the relief"
-        return relief, trace(name, working.external_from_relief, relief=relief, Phi=assembly.share_low)
+        behind = trace(
+            "external axial force behind the relief",
+            working.external_from_relief,
+            relief=relief,
+            Phi=assembly.share_low,
+        )
+        return relief, trace("larger external axial force", working.larger, F_1=behind, F_2=loaded.axial)
     if credited:
         # A bolt that has lost its clamp stays open: what presses it under the whole load did not hold it under less.
         pressing = np.where(without > 0, loaded.axial, np.maximum(loaded.axial, 0.0))

@@ -116,6 +116,12 @@ def external_from_relief(relief: Value, Phi: Value) -> Value:
     return relief / (1 - Phi)
 
 
+@formula("F_A", "max(F_1, F_2)", unit="N", **STATICS)
+def larger(F_1: Value, F_2: Value) -> Value:
+    """The larger of two external axial forces [N]: where a table tells both, the bolt is judged on the worse (statics, derived)."""
+    return np.maximum(F_1, F_2)
+
+
 @formula("clamp_0", "max(F_low - F_Z - F_R - F_th, 0)", unit="N", **STATICS)
 def clamp_without_axial(F_low: Value, F_Z: Value, F_R: Value, F_th: Value) -> Value:
     """Lowest clamp [N] before the axial load: assembly less embedding, relaxation, thermal loss; never below zero (statics, derived)."""

@@ -10,6 +10,7 @@ from pathlib import Path
 from typing import TYPE_CHECKING
 
 from slip.base.errors import InputError, Problems
+from slip.base.paths import refuse_overwriting
 from slip.base.progress import Progress
 from slip.commands.outcome import Outcome, report_options, units, write
 
@@ -45,7 +46,7 @@ def run(asked: argparse.Namespace, progress: Progress | None) -> Outcome:
             raise Problems([InputError("out-of-limits", name, str(value), "1 or more", write_)])
     for name in ("OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
         os.environ.setdefault(name, "1")  # the workers are processes; threads inside them only get in each other's way
-    from slip.cases.run import check_table, refuse_overwriting
+    from slip.cases.run import check_table
     from slip.report.cases import cases_json, cases_text
 
     written = {

@@ -109,4 +109,7 @@ def blocks(joint: Faced, grid: Grid, stiffness: FaceStiffness, notes: tuple[str,
 
     why = "both plates at the face are thicker than the pressed face is wide"
     ends = "the blocks are taken to reach on beyond the pressed face; where they end at it they yield more"
-    return Model(NAME, why, faces, build, lambda load: load / faces, stiffness.weakest, notes=(ends, *notes))
+    steep = "first slip, true slip and energy have the steep traction of half-spaces under the rim, which a block that ends there has not"
+    return Model(
+        NAME, why, faces, build, lambda load: load / faces, stiffness.weakest, notes=(f"{ends}; {steep}", *notes)
+    )

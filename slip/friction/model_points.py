@@ -8,7 +8,7 @@ from slip.base.records import record
 from slip.friction.compliance.springs import Springs
 from slip.friction.faces import FaceStiffness
 from slip.friction.march.face import Face
-from slip.friction.model import Built, Model
+from slip.friction.model import Built, Judged, Model, patch_rim
 from slip.pressure.patch import Patch
 
 Array = np.ndarray
@@ -19,16 +19,17 @@ NOWHERE = 1e-9  # share of the area that a point without contact keeps
 
 @record(eq=False)
 class Points:
-    """N points (N, 2) [mm] from the origin of the load, their areas (N,) [mm^2], the bolt that each belongs to, and the pressure [MPa]
-    at each per newton of every bolt's clamp, (N, n)."""
+    """N points (N, 2) [mm] from the origin of the load, their areas (N,) [mm^2], the bolt that each belongs to, the pressure [MPa] at
+    each per newton of every bolt's clamp, (N, n), and that of a patch's rim per newton of its own, 0 where the rim counts like all else."""
 
     places: Array
     areas: Array
     owner: Array
     unit: Array
+    rim: float
 
 
-def of_patches(arms: Array, patch: Patch) -> Points:
+def of_patches(arms: Array, patch: Patch, without_rim: bool) -> Points:
     """The patch of one bolt round each of n bolts at arms (n, 2) [mm]."""
     n, m = len(arms), len(patch.shares)
     places = (arms[:, None, :] + patch.points).reshape(n * m, 2)
@@ -37,13 +38,20 @@ def of_patches(arms: Array, patch: Patch) -> Points:
     distance = np.hypot(*(places[:, None, :] - arms).transpose(2, 0, 1))
     unit = patch.pressure(distance)
     unit[np.arange(n * m), owner] = np.tile(patch.density, n)
-    return Points(places, np.tile(patch.areas, n), owner, unit)
+    return Points(places, np.tile(patch.areas, n), owner, unit, patch_rim(patch) if without_rim else 0.0)
 
 
 def points(
-    name: str, laid: Points, stiffness: FaceStiffness, shear: float, faces: int, why: str, notes: tuple[str, ...]
+    name: str,
+    laid: Points,
+    stiffness: FaceStiffness,
+    shear: float,
+    faces: int,
+    why: str,
+    notes: tuple[str, ...],
+    stretch: float,
 ) -> Model:
-    """The model on points; shear: compliance of the plates through their thickness [mm/MPa]."""
+    """The model on points; shear: compliance of the plates through their thickness [mm/MPa]; stretch [mm]: in their plane, left out."""
     every = np.arange(len(laid.areas))
 
     def press(clamp: Array) -> Array:
@@ -59,6 +67,10 @@ def points(
         layer = np.where(touching, stiffness.at(pressure, reading), np.inf)
         bulk = np.full(len(every), 1.0 / shear if shear else np.inf)
         compliance = Springs(bulk, laid.areas * share, components=2, layer=layer)
-        return Built(compliance, Face(2, laid.places.T.copy()), lambda clamp: np.where(touching, press(clamp), 0.0))
+        seen = np.where(touching, np.maximum(pressure, laid.rim * clamp[laid.owner]), 0.0)
+        yields = 1 / np.where(touching, stiffness.at(seen, reading), np.inf)
+        judged = Judged(seen, 1 / layer + shear, yields + shear, yields)
+        face = Face(2, laid.places.T.copy())
+        return Built(compliance, face, lambda clamp: np.where(touching, press(clamp), 0.0), judged=judged)
 
-    return Model(name, why, faces, build, lambda load: load / faces, stiffness.weakest, notes=notes)
+    return Model(name, why, faces, build, lambda load: load / faces, stiffness.weakest, notes=notes, stretch=stretch)

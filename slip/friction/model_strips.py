@@ -13,7 +13,7 @@ from slip.friction.closed.layers import in_series, strip_stiffness
 from slip.friction.compliance.strips import Strips
 from slip.friction.faces import FaceStiffness, Lap
 from slip.friction.march.face import Face
-from slip.friction.model import Built, Model
+from slip.friction.model import Built, Judged, Model, patch_rim
 from slip.pressure.patch import Patch, from_profile
 
 Array = np.ndarray
@@ -32,13 +32,14 @@ THIN, SLENDER = (
 @record(eq=False)
 class Line:
     """Pressure in every cell, mean over the width, per newton of every bolt's clamp, (cells, n) [1/mm^2]; part of each cell's width
-    that is in contact, (cells,)."""
+    that is in contact, (cells,); pressure at the rim of a patch per newton of its clamp, 0 where the rim counts like all else."""
 
     unit: Array
     cover: Array
+    rim: float
 
 
-def of_patches(positions: Array, patch: Patch, lap: Lap, cells: int) -> Line:
+def of_patches(positions: Array, patch: Patch, lap: Lap, without_rim: bool, cells: int) -> Line:
     """The patch of one bolt laid on the cells round each of the bolts at positions (n, 2) [mm]."""
     along = positions[:, lap.axis]
     fine = from_profile(patch.radii, patch.profile, *FINE)
@@ -49,15 +50,18 @@ def of_patches(positions: Array, patch: Patch, lap: Lap, cells: int) -> Line:
     for bolt, row in enumerate(rows):
         unit[:, bolt] = np.bincount(row, weights=fine.shares, minlength=cells) / cell
         cover += np.bincount(row, weights=fine.areas, minlength=cells) / cell
-    return Line(unit, np.minimum(cover, 1.0))
+    return Line(unit, np.minimum(cover, 1.0), patch_rim(patch) if without_rim else 0.0)
 
 
 def even(lap: Lap, cells: int) -> Line:
     """One force that presses evenly on the whole overlap."""
-    return Line(np.full((cells, 1), 1 / (lap.width * lap.length)), np.ones(cells))
+    each = 1 / (lap.width * lap.length)
+    return Line(np.full((cells, 1), each), np.ones(cells), each)
 
 
-def strips(lap: Lap, laid: Callable[[int], Line], stiffness: FaceStiffness, clamp: Array) -> Model:
+def strips(
+    lap: Lap, laid: Callable[[int], Line], stiffness: FaceStiffness, clamp: Array, notes: tuple[str, ...] = ()
+) -> Model:
     """The model on strips; laid(cells): the pressure on so many; clamp (n,) [N] is asked for their number, and what the range says."""
     trace, line, cells = Trace(), laid(CELLS), CELLS
     omega = mean_decay(stiffness, lap, line, clamp, trace)
@@ -65,7 +69,7 @@ def strips(lap: Lap, laid: Callable[[int], Line], stiffness: FaceStiffness, clam
         cells *= 2
     line = laid(cells) if cells > CELLS else line
 
-    EA = lap.EA
+    EA, outside = lap.EA, _outside(lap, omega)
 
     def press(clamp: Array) -> Array:
         return line.unit @ clamp
@@ -77,7 +81,12 @@ def strips(lap: Lap, laid: Callable[[int], Line], stiffness: FaceStiffness, clam
         if stiffness.value is not None:  # it acts where the plates touch, not over the whole width
             layer = layer * np.maximum(line.cover, LEAST_COVER)
         compliance = Strips(lap.length, lap.width, cells, EA, layer=layer, shear=lap.shear)
-        return Built(compliance, Face(1), press, lambda q, load: _edge(lap, EA, q, load), 1 / layer + lap.shear)
+        touched = np.where(pressure > 0, line.cover, 0.0)
+        inside = pressure / np.maximum(touched, LEAST_COVER)  # of what touches in a cell, not of the whole width
+        seen = np.where(pressure > 0, np.maximum(inside, line.rim * clamp[np.argmax(line.unit * clamp, axis=1)]), 0.0)
+        yields = 1 / np.where(pressure > 0, stiffness.at(seen, reading) * np.maximum(touched, LEAST_COVER), np.inf)
+        judged = Judged(seen * touched, 1 / layer + lap.shear, yields + lap.shear, yields)
+        return Built(compliance, Face(1), press, lambda q, load: _edge(lap, EA, q, load), judged)
 
     return Model(
         NAME,
@@ -87,8 +96,9 @@ def strips(lap: Lap, laid: Callable[[int], Line], stiffness: FaceStiffness, clam
         lambda load: load[lap.axis : lap.axis + 1] / lap.halves,
         stiffness.weakest,
         lap.length,
-        _range(lap, omega),
+        (*notes, *([f"{outside}: true slip and energy are off by more than 10 %"] if outside else [])),
         trace,
+        outside=outside,
     )
 
 
@@ -106,15 +116,13 @@ def _edge(lap: Lap, stiffness: tuple[float, float], traction: Array, load: Array
     return more
 
 
-def _range(lap: Lap, omega: float) -> tuple[str, ...]:
-    """What the range of strips with t/(3G) says: slender laps whose shear decays over more than two thicknesses."""
+def _outside(lap: Lap, omega: float) -> str:
+    """How a lap lies out of the range of strips with t/(3G): slender laps whose shear decays over more than two thicknesses."""
     omega_t = omega * lap.thickness
-    notes = []
-    if omega_t > THIN:
-        notes.append(f"omega t = {omega_t:.2g} is above {THIN:g}: true slip and energy are off by more than 10 %")
+    said = [f"omega t = {omega_t:.3g} is above {THIN:g}"] if omega_t > THIN else []
     if lap.length < SLENDER * lap.thickness:
-        notes.append(f"the lap is shorter than {SLENDER:g} thicknesses: true slip and energy are off by more than 10 %")
-    return tuple(notes)
+        said.append(f"the lap is shorter than {SLENDER:g} thicknesses")
+    return ", ".join(said)
 
 
 def mean_decay(stiffness: FaceStiffness, lap: Lap, line: Line, clamp: Array, trace: Trace) -> float:

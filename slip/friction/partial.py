@@ -9,10 +9,11 @@ from slip.base.progress import Progress
 from slip.base.records import record
 from slip.base.trace import Trace
 from slip.clamp.stage import Clamp
+from slip.friction.cycle import cycle
 from slip.friction.faces import face_stiffness
 from slip.friction.march.load import SlipsWholly
-from slip.friction.march.step import State, Step, step
-from slip.friction.model import Built, Model
+from slip.friction.march.step import Step, step
+from slip.friction.model import Built, Model, rim_pressure
 from slip.friction.models import choose
 from slip.friction.stage import Slip
 from slip.joint.joint import Joint
@@ -22,7 +23,7 @@ Array = np.ndarray
 End = tuple[Array, Array]  # shear and moment (3,) [N, N mm], clamps (n,) [N]
 LOW, TYPICAL, HIGH = 0, 1, 2
 NO_SHEAR = "no shear"
-TURNS = 6  # increments between the ends of a case whose clamp changes on the way
+STRETCHED = 0.1  # of the motion of the faces; a larger stretch of the plates is told
 BEYOND = 0.9999  # of gross slip; above it no partial slip is worked out
 STUCK, TINY = 1e6, 1e-300  # bounds this many times the largest hold everything; smallest traction that is divided by
 FULL = 1 - 1e-9  # traction over bound from which a point counts as slipping
@@ -34,7 +35,9 @@ class Motions:
     with the clamp held; factors are the same over the load. stiffness [N/mm] before slip, along the shear.
 
     elastic_slip and true_slip [mm] at the point of largest motion under the load; slip_share: part of the clamp that slips;
-    slip_length [mm] of a lap. energy_per_cycle [N mm], None for a static case.
+    slip_length [mm] of a lap. energy_per_cycle [N mm], None for a static case, and where there is none to be told (`no_cycle`).
+    First slip and largest motion take the points that carry the last 1 % of the clamp, where the pressure runs out, as pressed by
+    what the others have at least (`patch_rim`).
     """
 
     first_slip_factor: float
@@ -45,13 +48,15 @@ class Motions:
     slip_share: float
     slip_length: float | None
     energy_per_cycle: float | None
+    no_cycle: str = ""
 
 
 @record(eq=False)
 class PartialSlip:
     """One end of a case: the model and why it was taken, the motions at low, typical and high stiffness; or `reason` why there are none.
 
-    trace: what the model takes, and what it gives at the typical stiffness.
+    trace: what the model takes, and what it gives at the typical stiffness. stretch [mm]: by which true slip may be more, since the
+    model leaves the plates rigid in their plane; outside: how the joint lies out of the model's range, '' inside.
     """
 
     model: str
@@ -62,6 +67,13 @@ class PartialSlip:
     gross_slip_load: float | None
     reason: str
     trace: Trace
+    stretch: float = 0.0
+    outside: str = ""
+
+    @property
+    def largest_true_slip(self) -> float:
+        """Of the three readings [mm], 0 where there are none."""
+        return max((reading.true_slip for reading in self.readings), default=0.0)
 
     @property
     def wholly(self) -> bool:
@@ -87,7 +99,7 @@ class Partial:
         if self.stiffness is None:
             self.reason = "give roughness of both faces and the plates' materials, or a measured tangential_stiffness"
         elif pressure.patch is None:
-            self.reason = (
+            self.reason = pressure.reason or (
                 "give plates with material and thickness, hole and bearing diameters, and the thread of a tapped hole"
             )
         else:
@@ -139,10 +151,36 @@ def under(model: Model, friction: float, one: End, other: End, gross: float, alt
             reason = f"slips wholly at {error.factor:.4g} times this load on the points of the model"
     if readings:
         _said(model, readings[TYPICAL])
-    notes = model.notes
-    if alternating and any(reading.energy_per_cycle is None for reading in readings):
-        notes = (*notes, "the face slips wholly on the way to the other end: no energy of a cycle")
-    return PartialSlip(model.name, model.why, notes, readings, gross, gross_load, reason, model.trace)
+    return PartialSlip(
+        model.name,
+        model.why,
+        (*model.notes, *_notes(model, readings)),
+        readings,
+        gross,
+        gross_load,
+        reason,
+        model.trace,
+        model.stretch,
+        model.outside,
+    )
+
+
+def _notes(model: Model, readings: tuple[Motions, ...]) -> list[str]:
+    """What a reader must know of what was found."""
+    if not readings:
+        return []
+    moved = readings[TYPICAL].elastic_slip + readings[TYPICAL].true_slip
+    notes = []
+    if model.stretch > STRETCHED * moved:
+        said = f"plates stretch by up to {in_um(model.stretch)} in their plane, which the model leaves out"
+        notes.append(f"{said}; the faces move by {in_um(moved)}")
+    silent = dict.fromkeys(reading.no_cycle for reading in readings if reading.no_cycle)
+    return [*notes, *(f"{why}: no energy of a cycle" for why in silent)]
+
+
+def in_um(length: float) -> str:
+    """A length [mm] in micrometres."""
+    return f"{1e3 * length:.3g} um"
 
 
 def _said(model: Model, found: Motions) -> None:
@@ -157,29 +195,31 @@ def _said(model: Model, found: Motions) -> None:
     )
     for name, symbol, value, unit in values:
         if value is not None:
-            said = f"{name}; {model.why}" if symbol == "f_on" else name
-            model.trace.given(said, symbol, value, unit, "step", model.basis)
+            model.trace.given(name, symbol, value, unit, "step", model.basis)
     both = {"g_el": found.elastic_slip, "s": found.true_slip}
     model.trace.total("motion of the faces there, elastic and true slip", "g", both, "mm", "step", model.basis)
 
 
 def motions_of(model: Model, friction: float, reading: int, one: End, other: End, alternating: bool) -> Motions:
-    """One reading of the stiffness: the stuck answer, the load put on once, and a steady cycle."""
+    """One reading of the stiffness: the stuck answer, the load put on once, and a steady cycle.
+
+    The face has the stiffness that the clamp of `one` gives it; over the cycle that of the larger clamp of both ends.
+    """
     load, held = one
-    built = model.build(np.maximum(held, other[1]), reading)
+    built = model.build(held, reading)
     bound = friction * built.press(held)
     touching = bound > 0
     wanted = model.load(load)
     stuck = step(built.compliance, np.where(touching, STUCK * bound.max(), 0.0), built.face, load=wanted)
-    carried = _size(stuck.state.traction) + _beyond(built, stuck, wanted)[1]
-    first = float((bound[touching] / np.maximum(carried[touching], TINY)).min())
+    first = _first_slip(stuck, built, wanted, bound, friction)
     loaded = step(built.compliance, bound, built.face, load=wanted)
     full = touching & (_size(loaded.state.traction) >= FULL * bound)
-    true, elastic = _at_largest_motion(loaded, built, wanted, touching, full)
+    true, elastic = _at_largest_motion(loaded, built, wanted, bound, friction)
     weight = bound * built.compliance.area
     force = float(np.hypot(load[0], load[1]))
     straight = slice(0, built.face.components)
     travel = float(stuck.state.motion[straight] @ wanted[straight])
+    energy, no_cycle = cycle(model, reading, friction, one, other) if alternating else (None, "")
     return Motions(
         first_slip_factor=first,
         first_slip_load=first * force if force else None,
@@ -188,7 +228,8 @@ def motions_of(model: Model, friction: float, reading: int, one: End, other: End
         true_slip=true,
         slip_share=float((weight * full).sum() / weight.sum()),
         slip_length=float(full.sum() * model.length / full.size) if model.length else None,
-        energy_per_cycle=_cycle(model, built, friction, one, other, loaded) if alternating else None,
+        energy_per_cycle=energy,
+        no_cycle=no_cycle,
     )
 
 
@@ -197,44 +238,37 @@ def _size(field: Array) -> Array:
     return np.sqrt((field**2).sum(axis=0))
 
 
-def _beyond(built: Built, done: Step, load: Array) -> tuple[Array, Array]:
-    """By how much the outer edges of points move more than the points in their mean [mm], and the traction that is for a stuck one
-    [MPa]; both 0 where a model has no such edges."""
-    if built.edge is None or built.local is None:
-        return np.zeros(built.compliance.shape), np.zeros(built.compliance.shape)
-    more = built.edge(done.state.traction, load)
-    return more, more / built.local
+def _first_slip(stuck: Step, built: Built, load: Array, bound: Array, friction: float) -> float:
+    """Factor on the load at which the first point would slip, from the answer where none does."""
+    carried, judged = _size(stuck.state.traction), built.judged
+    if judged is None:
+        counted = _inside_rim(built, bound)
+        return float((bound[counted] / np.maximum(carried[counted], TINY)).min())
+    touching = bound > 0
+    motion = (judged.own * carried + _beyond(built, stuck, load))[touching]
+    return float((friction * (judged.pressure * judged.local)[touching] / np.maximum(motion, TINY)).min())
 
 
-def _at_largest_motion(loaded: Step, built: Built, load: Array, touching: Array, full: Array) -> tuple[float, float]:
-    """True slip and elastic slip [mm] at the touching point where both together are largest; full: the points that slip."""
-    motion, traction = _beyond(built, loaded, load)
-    true = np.where(touching, _size(loaded.state.slip) + np.where(full, motion, 0.0), 0.0)
-    carried = _size(loaded.state.traction) + np.where(full, 0.0, traction)
-    elastic = np.where(touching, _size(built.compliance.elongation(carried[None])), 0.0)
-    most = np.unravel_index(int(np.argmax(true + elastic)), true.shape)
+def _inside_rim(built: Built, bound: Array) -> Array:
+    """Points (*field) whose pressure is not below that of the rim; bound: friction times pressure."""
+    return (bound > 0) & (bound >= FULL * rim_pressure(bound, bound * built.compliance.area))
+
+
+def _beyond(built: Built, done: Step, load: Array) -> Array:
+    """By how much the outer edges of points move more than the points in their mean [mm]; 0 where a model has no such edges."""
+    return np.zeros(built.compliance.shape) if built.edge is None else built.edge(done.state.traction, load)
+
+
+def _at_largest_motion(loaded: Step, built: Built, load: Array, bound: Array, friction: float) -> tuple[float, float]:
+    """True slip and elastic slip [mm] at the touching point where both together are largest."""
+    true, carried, judged = _size(loaded.state.slip), _size(loaded.state.traction), built.judged
+    if judged is None:
+        counted, elastic = _inside_rim(built, bound), _size(built.compliance.elongation(carried[None]))
+    else:
+        counted = bound > 0
+        motion = true + judged.own * carried + _beyond(built, loaded, load)
+        carried = np.minimum(motion / np.where(counted, judged.local, 1.0), friction * judged.pressure)
+        true, elastic = np.maximum(motion - carried * judged.local, 0.0), carried * judged.face
+    both = np.where(counted, true + elastic, 0.0)
+    most = np.unravel_index(int(np.argmax(both)), both.shape)
     return float(true[most]), float(elastic[most])
-
-
-def _cycle(model: Model, built: Built, friction: float, one: End, other: End, start: Step) -> float | None:
-    """Energy [N mm] of a cycle from one end to the other and back, after it has become steady; None where all slips on the way.
-
-    The layer keeps the stiffness it was built with; the bound follows the clamp.
-    """
-    state: State = start.state
-    spent = 0.0
-    turns = 1 if np.array_equal(one[1], other[1]) else TURNS
-    for lap in range(2):
-        spent = 0.0
-        for (load_a, clamp_a), (load_b, clamp_b) in ((one, other), (other, one)):
-            for part in np.arange(1, turns + 1) / turns:
-                bound = friction * built.press(clamp_a + part * (clamp_b - clamp_a))
-                wanted = model.load(load_a + part * (load_b - load_a))
-                try:
-                    done = step(built.compliance, bound, built.face, state, load=wanted)
-                except SlipsWholly:
-                    return None
-                state, spent = done.state, spent + done.dissipation
-        if turns == 1 and lap == 0 and np.allclose(one[0], -other[0]):
-            break  # proportional loading at constant clamp: the first full cycle is the steady one
-    return spent * model.faces

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 import numpy as np
 
-from slip.base.errors import InputError, Problems
+from slip.base.errors import InputError, NotConverged, Problems
 from slip.base.notes import Note
 from slip.base.records import record
 from slip.joint.joint import Joint
@@ -21,12 +21,14 @@ EVEN, NEAR_FACE = 0.0, 1.0
 @record
 class Pressure:
     """What the pressure stage found. patch: of one bolt by the contact of its plates, None where nothing needs it or the file does not
-    describe it; torque_patch: what a torque on a single bolt is held by, None where there is none; basis: of the torque patch."""
+    describe it; torque_patch: what a torque on a single bolt is held by, None where there is none; basis: of the torque patch.
+    reason: why there is no patch though the file describes it, ''."""
 
     patch: Patch | None
     torque_patch: Patch | None
     basis: str
     assumptions: tuple[Note, ...]
+    reason: str = ""
 
 
 def pressure(joint: Joint, turning: bool) -> Pressure:
@@ -38,22 +40,40 @@ def pressure(joint: Joint, turning: bool) -> Pressure:
     known = joint.interface.roughness is not None or joint.interface.tangential_stiffness is not None
     turned = single and turning
     rings = (RINGS, AROUND) if single else (FEW_RINGS, FEW_AROUND)
-    profile = _profile(joint, EVEN) if known or turned else None
+    try:
+        profile, reason = _profile(joint, EVEN) if known or turned else None, ""
+    except NotConverged as error:  # gross slip needs no contact of the plates
+        profile, reason = None, str(error)
     patch = None if profile is None else from_profile(*profile, *rings)
     notes = () if patch is None else _engaged_note(joint)
     if not turned:
-        return Pressure(patch, None, "", notes)
-    if patch is not None and all(plate.outline is not None for plate in joint.plates):
-        near = _profile(joint, NEAR_FACE) if joint.bolt.tapped else None
-        torque_patch = patch if near is None else from_profile(*near, *rings)
-        radius = joint.system.say(torque_patch.friction_radius, "length")
-        note = Note("friction-radius", f"plates flat round the bolt: its torque is held at {radius}", "plate.outline")
-        return Pressure(patch, torque_patch, "derived", (*notes, note))
+        return Pressure(patch, None, "", notes, reason)
+    torque_patch = _torque_patch(joint, patch)
+    if torque_patch is not None:
+        radius, other = joint.system.say(torque_patch.friction_radius, "length"), ""
+        if torque_patch is not patch and known:
+            other = "; partial slip takes a wider contact"
+        said = f"plates flat round the bolt: its torque is held at {radius}{other}"
+        return Pressure(patch, torque_patch, "derived", (*notes, Note("friction-radius", said, "plate.outline")))
     if joint.bolt.hole_diameter is None:
         expected = "hole_diameter, the radius at which a single bolt holds a torque"
         raise Problems([InputError("missing-key", "bolt.hole_diameter", "nothing", expected, "add it", joint.file)])
-    note = Note("friction-radius-hole", "torque on one bolt is held at the hole radius", "plate")
-    return Pressure(patch, thin_ring(joint.bolt.hole_diameter / 2, AROUND), "practice", (*notes, note))
+    other = "; partial slip takes the contact of the plates" if patch is not None and known else ""
+    note = Note("friction-radius-hole", f"torque on one bolt is held at the hole radius{other}", "plate")
+    return Pressure(patch, thin_ring(joint.bolt.hole_diameter / 2, AROUND), "practice", (*notes, note), reason)
+
+
+def _torque_patch(joint: Joint, patch: Patch | None) -> Patch | None:
+    """The contact that holds a torque on a single bolt: narrow for a thread; None where plates or contact are not known."""
+    if patch is None or any(plate.outline is None for plate in joint.plates):
+        return None
+    if not joint.bolt.tapped:
+        return patch
+    try:
+        near = _profile(joint, NEAR_FACE)
+    except NotConverged:
+        return None
+    return patch if near is None else from_profile(*near, RINGS, AROUND)
 
 
 def _profile(joint: Joint, fall: float) -> tuple[np.ndarray, np.ndarray] | None:

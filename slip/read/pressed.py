@@ -13,9 +13,14 @@ from slip.read.document import Document
 from slip.read.reader import Reader, Stop
 from slip.read.sections import Section, many, one
 
+SIZES = ("radius", "flat_width", "length")
 Sizes = tuple[float | None, float | None, float | None]  # radius, flat width, length [mm]
-ROUND = ("sphere",)
-FLAT = ("flat", "rounded flat")
+TAKEN = {  # sizes that a shape has
+    "sphere": ("radius",),
+    "cylinder": ("radius", "length"),
+    "flat": ("flat_width", "length"),
+    "rounded flat": ("radius", "flat_width", "length"),
+}
 PARTS = ("bolt", "tightening", "losses", "plate", "pattern", "axial", "standard")
 NO_MATTER = ("one-face", "no-overturning")  # assumptions that a single pressed face does not make
 ALONE = 1e-9  # of the shear; ends that differ more than this in direction are not on one line
@@ -76,14 +81,20 @@ def _profile(r: Reader) -> tuple[str, Sizes, float, float]:
 
 def _sizes(section: Section, shape: str) -> Sizes:
     """Radius, flat width and length as the shape needs them."""
+    for name in SIZES:
+        if name not in section.values or name in TAKEN[shape]:
+            continue
+        others = [f'"{other}"' for other in SHAPES if name in TAKEN[other]]
+        remedy = f"leave {name} out, or write shape = {' or '.join(others)}"
+        section.stop_value(name, "key-not-of-shape", f'only {" and ".join(TAKEN[shape])} for shape = "{shape}"', remedy)
     radius = width = length = None
-    if shape != "flat":
+    if "radius" in TAKEN[shape]:
         radius = section.need("radius", f"the radius of a {shape}", 'add radius = "10 mm"')
-    if shape in FLAT:
+    if "flat_width" in TAKEN[shape]:
         width = section.need("flat_width", "the width or diameter of the flat part", 'add flat_width = "8 mm"')
     if shape == "cylinder":
         length = section.need("length", "the length of a cylinder", 'add length = "20 mm"')
-    elif shape not in ROUND:
+    elif "length" in TAKEN[shape]:
         length = section.get("length")
     return radius, width, length
 

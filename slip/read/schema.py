@@ -10,6 +10,10 @@ from math import inf
 
 from slip.base.records import record
 
+# What lies beyond is mistyped: a part below a micrometre; a face softer than foam a hand thick, stiffer than steel an atom thick.
+LEAST_LENGTH = 1e-3  # mm
+LEAST_PER_AREA, MOST_PER_AREA = 1e-3, 1e12  # N/mm^3
+
 
 @record
 class Key:
@@ -35,12 +39,14 @@ class Key:
 
 
 def _length(table: str, name: str, help: str, **more: object) -> Key:
-    """A length that must be positive."""
-    return Key(table, name, "length", help, least=0.0, above=True, **more)  # type: ignore[arg-type]
+    """A dimension of a part."""
+    return Key(table, name, "length", help, least=LEAST_LENGTH, **more)  # type: ignore[arg-type]
 
 
 def positive(kind: str, name: str = "") -> Key:
-    """A value above zero that stands inside another value."""
+    """A value above zero that stands inside another value; a stiffness per area within its limits."""
+    if kind == "stiffness per area":
+        return Key("", name, kind, "", least=LEAST_PER_AREA, most=MOST_PER_AREA)
     return Key("", name, kind, "", least=0.0, above=True)
 
 
@@ -218,8 +224,8 @@ KEYS: tuple[Key, ...] = (
         "stiffness per area",
         "measured, rig and bulk taken out",
         shape="range",
-        least=0,
-        above=True,
+        least=LEAST_PER_AREA,
+        most=MOST_PER_AREA,
     ),
     Key(
         "interface",
@@ -364,8 +370,8 @@ KEYS: tuple[Key, ...] = (
         "present_normal",
         "stiffness per area",
         "normal contact stiffness",
-        least=0,
-        above=True,
+        least=LEAST_PER_AREA,
+        most=MOST_PER_AREA,
     ),
     Key("finite_elements", "friction", "friction", "of the model"),
     Key(

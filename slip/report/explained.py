@@ -9,24 +9,30 @@ from slip.assess import Assessment, FaceAssessment, PressedAssessment
 from slip.base.formulas import citation
 from slip.report.checked import WIDTH
 from slip.report.equations import Explanation
+from slip.report.partial import remarks
 from slip.report.terminal import end_of, verdict_lines
-from slip.report.words import plain, wrapped
+from slip.report.words import cut, plain, wrapped
 
 
 def explain_text(explanation: Explanation, assessment: Assessment) -> str:
     """The lines of an explanation as blocks, each with formula, numbers put in, result, source key and basis; citations last."""
     place = ", ".join([plain(explanation.case), *end_of(assessment, explanation.case, explanation.end)])
     head = [f"Every number of {place}, bolt {plain(explanation.bolt)}, in N, mm, MPa", *verdict_lines(assessment)]
-    return told(head, explanation, assessment)
+    index = [case.name for case in assessment.joint.cases].index(explanation.case)
+    return told(head, explanation, assessment, remarks(assessment.partial.of(index, explanation.end)))
 
 
 def told(
-    head: Sequence[str], explanation: Explanation, assessment: Assessment | PressedAssessment | FaceAssessment
+    head: Sequence[str],
+    explanation: Explanation,
+    assessment: Assessment | PressedAssessment | FaceAssessment,
+    partial: Sequence[str] = (),
 ) -> str:
-    """The first lines, then every number as a block, assumptions, warnings and citations."""
-    lines, system = list(head), assessment.joint.system
+    """The first lines, then every number as a block, what is said of partial slip, assumptions, warnings and citations."""
+    lines, system = [cut(line, WIDTH) for line in head], assessment.joint.system
     if system.name != "N mm":
-        lines.append(f"The file is in {system.name}: 1 lbf = 4.4482216 N, 1 in = 25.4 mm, 1 psi = 0.0068947573 MPa.")
+        units = "1 lbf = 4.4482216 N, 1 in = 25.4 mm, 1 psi = 0.0068947573 MPa"
+        lines += wrapped(f"The file is in {system.name}: {units}.", WIDTH)
     group = ""
     for line in explanation.lines:
         if line.group != group:
@@ -40,7 +46,11 @@ def told(
         else:
             lines.append(f"    {line.symbol} = {line.result:.8g} {line.unit}".rstrip())
         if line.valid:
-            lines.append(f"    valid for: {line.valid}")
+            lines += wrapped(f"valid for: {line.valid}", WIDTH, "    ", "      ")
+    if partial:
+        lines += ["", "ON PARTIAL SLIP", ""]
+        for said in partial:
+            lines += wrapped(plain(said, 400), WIDTH, "", "    ")
     for title, notes in (("ASSUMED", assessment.assumptions), ("WARNINGS", assessment.warnings)):
         if notes:
             lines += ["", title, ""]

@@ -15,6 +15,7 @@ from slip.friction.partial import NO_SHEAR
 from slip.report.machine import FORMAT, UNITS, check_entry, friction_entry, governing_entry, slip_answer
 from slip.report.partial import KINDS, partial_entry, said_of, short
 from slip.report.words import CAUTION, check_name, factor, plain, wrapped
+from slip.verdict.checks import Check
 
 WIDTH = 80
 WORDS = {0: "HOLDS", 1: "FAILS"}
@@ -94,7 +95,7 @@ def face_text(assessment: FaceAssessment, units: System | None = None) -> str:
 
 def verdict_lines(assessment: FaceAssessment, system: System) -> Iterator[str]:
     """What governs, against what, where; at which friction and force."""
-    face, g = assessment.joint, assessment.verdict.governing
+    face, g = assessment.joint, spoken_of(assessment)
     word, place = WORDS.get(assessment.verdict.exit_code, "NOT SOLVED"), f"({plain(g.case, 30)}, {g.end} end)"
     yield from wrapped(f"{word}: {sentence(assessment)} {place}", WIDTH)
     pressed = f"{short(system.out(face.force, 'force'))} {system.force} on each face"
@@ -135,14 +136,21 @@ def _ends(assessment: FaceAssessment, system: System) -> Iterator[tuple[str, lis
             yield from ((f"{name}, {end} end", text) for end, text in texts)
 
 
+def spoken_of(assessment: FaceAssessment) -> Check:
+    """The governing check; where nothing fails but something is not solved, that."""
+    verdict = assessment.verdict
+    unsolved = [check for check in verdict.checks if check.decides and not check.solved]
+    return unsolved[0] if verdict.exit_code not in WORDS and unsolved else verdict.governing
+
+
 def sentence(assessment: FaceAssessment) -> str:
-    """The governing check and what it is held against."""
-    g = assessment.verdict.governing
+    """The check that the verdict speaks of and what it is held against."""
+    g = spoken_of(assessment)
     said = check_name(g.check)
     if g.required is not None and g.load_factor is not None and g.load_factor < float("inf"):
         said = f"the face slips wholly at {factor(g.load_factor, g.required)} times the load, required {g.required:g}"
     elif g.reason:
-        said += f": {g.reason}"
+        said += f": {g.reason.removeprefix('not solved: ')}"
     return said
 
 

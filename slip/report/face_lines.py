@@ -13,6 +13,7 @@ from slip.joint.plates import Rectangle, Ring
 from slip.report.equations import FILE, Explanation, Line, find, friction_said, picked
 from slip.report.explained import told
 from slip.report.face import verdict_lines
+from slip.report.partial import remarks
 from slip.report.words import plain
 from slip.verdict.checks import first_least
 
@@ -94,4 +95,5 @@ def explain_face_text(explanation: Explanation, assessment: FaceAssessment) -> s
     """The lines of an explanation as blocks, citations last."""
     place = f"{plain(explanation.case)}, {explanation.end} end"
     head = [f"Every number of {place}, in N, mm, MPa", *verdict_lines(assessment, assessment.joint.system)]
-    return told(head, explanation, assessment)
+    index = [case.name for case in assessment.joint.cases].index(explanation.case)
+    return told(head, explanation, assessment, remarks(assessment.slips[index, explanation.end].partial))

@@ -19,7 +19,8 @@ from slip.report.face_figure import along_figure, plan_figure
 from slip.report.face_lines import explain_face
 from slip.report.inputs import Group, Pair, interface_pairs, load_heads, load_rows, plate_row
 from slip.report.page import MEANINGS, WORDS, environment, line_groups, noted, page_stamp, sources_of, unmet
-from slip.report.partial import short
+from slip.report.partial import remarks, short
+from slip.report.partial_rows import placed
 from slip.report.rows import NAME, SHOWN, Row, Table
 from slip.report.words import CAUTION, NOT_ASSESSED, factor, once, plain
 
@@ -32,7 +33,6 @@ def face_page(assessment: FaceAssessment, units: System | None = None) -> str:
     system = units or face.system
     case, end, found = _governing(assessment)
     explanation = explain_face(assessment)
-    listed = [one.partial for one in assessment.slips.values() if one.partial is not None]
     return (
         environment()
         .get_template("face.html")
@@ -47,11 +47,7 @@ def face_page(assessment: FaceAssessment, units: System | None = None) -> str:
             place=f"{plain(face.cases[case].name, NAME)}, {end} end",
             plan=_plan(assessment, case, end, found, system),
             partial=face_rows.partial_table(assessment, system),
-            said=once(
-                [f"{one.model}: {one.why}" for one in listed if one.model]
-                + [note for one in listed for note in one.notes]
-                + [one.reason for one in listed if one.reason not in ("", NO_SHEAR)]
-            ),
+            said=_remarks(assessment),
             missing=once(one.reason for one in assessment.slips.values() if one.reason),
             beside=face_rows.beside(found, system),
             routes=face_rows.route_table(assessment, system),
@@ -73,6 +69,16 @@ def _governing(assessment: FaceAssessment) -> tuple[int, str, FaceSlip]:
     return next(
         (i, end, found) for (i, end), found in assessment.slips.items() if (cases[i].name, end) == (g.case, g.end)
     )
+
+
+def _remarks(assessment: FaceAssessment) -> list[str]:
+    """What must be known of partial slip, with the cases and ends that it is of."""
+    cases, groups = assessment.joint.cases, dict[str, list[str]]()
+    listed = [(f"{plain(cases[i].name, NAME)}, {end}", found.partial) for (i, end), found in assessment.slips.items()]
+    for place, partial in listed:
+        for said in remarks(partial):
+            groups.setdefault(said, []).append(place)
+    return [placed(said, places, len(listed)) for said, places in groups.items() if said != NO_SHEAR]
 
 
 # the verdict

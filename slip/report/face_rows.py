@@ -10,9 +10,9 @@ import numpy as np
 from slip.assess import FaceAssessment
 from slip.base.units import System
 from slip.friction.known_pressure import FaceSlip
-from slip.friction.partial import HIGH, LOW, NO_SHEAR, TYPICAL
+from slip.friction.partial import NO_SHEAR, TYPICAL
 from slip.report.face import CLOSED, closed_values
-from slip.report.partial import KINDS, short
+from slip.report.partial import KINDS, banded, short
 from slip.report.rows import NAME, SHOWN, TEXT, Row, Table, state, urgency
 from slip.report.words import check_name, factor, plain
 from slip.verdict.checks import Check
@@ -114,7 +114,7 @@ def partial_table(assessment: FaceAssessment, system: System) -> Table | None:
     for (i, end), found in assessment.slips.items():
         if found.partial is not None:
             gross = found.partial.gross_slip_load
-            cells = [_with_band(found, name, system) for name in MEASURED]
+            cells = [banded(found.partial, name, system) for name in MEASURED]
             cells.insert(1, "-" if gross is None else short(system.out(gross, "force")))
             rows.append(Row([plain(assessment.joint.cases[i].name, NAME), end, *cells]))
     if not rows:
@@ -133,15 +133,6 @@ def partial_table(assessment: FaceAssessment, system: System) -> Table | None:
     )
     caption = "Partial slip of every case and end, typical stiffness of the face (low .. high)"
     return _filled(Table(caption, heads, rows[:SHOWN], rows[SHOWN:], range(2, 99)), (8, 9))
-
-
-def _with_band(found: FaceSlip, name: str, system: System) -> str:
-    """A value at the typical stiffness with those at the low and high one."""
-    values = [getattr(reading, name) for reading in found.partial.readings] if found.partial else []
-    if not values or any(value is None for value in values):
-        return "-"
-    shown = [short(system.out(value, KINDS[name])) for value in values]
-    return f"{shown[TYPICAL]} ({shown[LOW]} .. {shown[HIGH]})"
 
 
 # both routes of a lap

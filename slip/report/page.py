@@ -137,7 +137,8 @@ def _sentence(assessment: Assessment) -> str:
         return f"{name}: nothing limits" if g.holds else name
     if g.required is None:
         said = f"reserve {factor(g.reserve_factor, 1.0)}"
-        return f"{name}: {said}" if g.holds or not g.reason else f"{name}: precondition not met, {said}"
+        unmet_precondition = not g.holds and g.reason and g.check.startswith("standard.")
+        return f"{name}: precondition not met, {said}" if unmet_precondition else f"{name}: {said}"
     growing = "" if g.check == "separation" else ", all loads growing" if grows == "all loads" else ", clamp held"
     return f"{name} {factor(g.factor(grows), g.required)}, required {g.required:g}{growing}"
 

@@ -6,10 +6,12 @@ from typing import Any
 
 from slip.assess import Assessment
 from slip.base.units import System
-from slip.friction.partial import HIGH, LOW, TYPICAL, PartialSlip
-from slip.report.partial import KINDS, short, stiffness_entry
+from slip.friction.partial import PartialSlip
+from slip.report.partial import banded, remarks, short, stiffness_entry
 from slip.report.rows import NAME, Row, Table
-from slip.report.words import once, plain
+from slip.report.words import plain
+
+FEW = 3  # cases and ends that a remark names
 
 
 def partial_part(assessment: Assessment, system: System) -> dict[str, Any]:
@@ -34,13 +36,14 @@ def partial_part(assessment: Assessment, system: System) -> dict[str, Any]:
         "share that slips",
         f"energy a cycle [{system.unit('energy')}]",
     )
-    said = [f"{entry.model}: {entry.why}" for _, entry in found if entry is not None and entry.model]
-    said += [note for _, entry in found if entry is not None for note in entry.notes]
-    said += [entry.reason for _, entry in found if entry is not None and entry.reason]
+    groups: dict[str, list[str]] = {}
+    for end, entry in found:
+        for said in remarks(entry):
+            groups.setdefault(said, []).append(f"{plain(assessment.joint.cases[end.case].name, NAME)}, {end.end}")
     return {
         "reason": "",
         "table": Table("Partial slip of every case and end, typical stiffness of the face (low .. high)", heads, rows),
-        "said": list(once(said)),
+        "said": [placed(said, places, len(found)) for said, places in groups.items()],
         "stiffness": _stiffness_said(assessment, system),
     }
 
@@ -48,17 +51,16 @@ def partial_part(assessment: Assessment, system: System) -> dict[str, Any]:
 def _cells(found: PartialSlip, system: System) -> list[str]:
     gross = "-" if found.gross_slip_load is None else short(system.out(found.gross_slip_load, "force"))
     names = ("first_slip_load", "stiffness", "elastic_slip", "true_slip", "slip_share", "energy_per_cycle")
-    cells = [_with_band(found, name, system) for name in names]
+    cells = [banded(found, name, system) for name in names]
     return [cells[0], gross, *cells[1:]]
 
 
-def _with_band(found: PartialSlip, name: str, system: System) -> str:
-    """A value at the typical stiffness with those at the low and high one."""
-    values = [getattr(reading, name) for reading in found.readings]
-    if not values or values[TYPICAL] is None:
-        return "-"
-    shown = [short(system.out(value, KINDS[name])) for value in values]
-    return f"{shown[TYPICAL]} ({shown[LOW]} .. {shown[HIGH]})"
+def placed(said: str, places: list[str], all_ends: int) -> str:
+    """A remark with the cases and ends that it is of, unless it is of all."""
+    if len(places) == all_ends:
+        return said
+    more = f" and {len(places) - FEW} more" if len(places) > FEW else ""
+    return f"{said} ({'; '.join(places[:FEW])}{more})"
 
 
 def _stiffness_said(assessment: Assessment, system: System) -> str:

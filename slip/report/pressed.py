@@ -13,7 +13,7 @@ from slip.base.units import System
 from slip.friction.pressed.records import PressedSlip, Route
 from slip.report.machine import FORMAT, UNITS, check_entry, friction_entry, governing_entry, slip_answer
 from slip.report.partial import short
-from slip.report.words import CAUTION, NOT_ASSESSED, check_name, factor, once, plain, wrapped
+from slip.report.words import CAUTION, NOT_OF_PRESSED, check_name, factor, once, plain, wrapped
 
 WIDTH = 80
 GLUE = "\N{WORD JOINER}"  # in place of a space that no line is broken at
@@ -155,7 +155,7 @@ def _lines(assessment: PressedAssessment, system: System) -> Iterator[str]:
     for said, notes in (("Assumed", assessment.assumptions), ("Warnings", assessment.warnings)):
         if notes:
             yield from wrapped(f"{said} ({len(notes)}): " + "; ".join(plain(n.text, 160) for n in notes), WIDTH)
-    yield from wrapped(f"Not assessed: {NOT_ASSESSED}. Caution: {CAUTION}", WIDTH)
+    yield from wrapped(f"Not assessed: {NOT_OF_PRESSED}. Caution: {CAUTION}", WIDTH)
 
 
 def _end_lines(assessment: PressedAssessment, case: str, end: str, found: PressedSlip, system: System) -> Iterator[str]:

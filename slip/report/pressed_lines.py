@@ -9,8 +9,8 @@ from slip.base.errors import InputError, Problems
 from slip.joint.contact import PressedContact
 from slip.report.equations import FILE, Explanation, Line, find, friction_said, picked
 from slip.report.explained import told
-from slip.report.pressed import verdict_lines
-from slip.report.words import plain
+from slip.report.pressed import WIDTH, verdict_lines
+from slip.report.words import plain, wrapped
 
 ONE = (1, 1)
 
@@ -59,10 +59,14 @@ def _inputs(c: PressedContact) -> Iterator[Line]:
         name, origin = f"of the {which} body" + (f", {m.name}" if m.source != FILE[0] else ""), (m.source, m.basis)
         yield from line(f"modulus {name}", "E", m.youngs_modulus, "MPa", origin)
         yield from line(f"Poisson's ratio {name}", "nu", m.poissons_ratio, "", origin)
+        yield from line(f"yield strength {name}", "Y", m.yield_strength, "MPa", origin)
 
 
 def explain_pressed_text(explanation: Explanation, assessment: PressedAssessment) -> str:
     """The lines of an explanation as blocks, citations last."""
     place = f"{plain(explanation.case)}, {explanation.end} end"
     head = [f"Every number of {place}, in N, mm, MPa", *verdict_lines(assessment)]
+    index = [case.name for case in assessment.joint.cases].index(explanation.case)
+    for note in assessment.slips[index, explanation.end].notes:
+        head += wrapped(f"Note: {note}", WIDTH)
     return told(head, explanation, assessment)

@@ -17,7 +17,7 @@ from slip.report.pressed import KINDS, alike, band_said, pressure_word, sentence
 from slip.report.pressed_figure import traction_figure
 from slip.report.pressed_lines import explain_pressed
 from slip.report.rows import NAME, SHOWN, TEXT, Row, Table, state, urgency
-from slip.report.words import CAUTION, NOT_ASSESSED, check_name, factor, once, plain
+from slip.report.words import CAUTION, NOT_OF_PRESSED, check_name, factor, once, plain
 from slip.verdict.checks import Check
 
 TOLD = {
@@ -57,7 +57,7 @@ def pressed_page(assessment: PressedAssessment, units: System | None = None) -> 
             picture=_picture(assessment, found, system),
             routes=_route_table(assessment, system),
             notes=once(note for one in assessment.slips.values() for note in one.notes),
-            not_assessed=NOT_ASSESSED,
+            not_assessed=NOT_OF_PRESSED,
             inputs=_groups(assessment, system),
             input_tables=[_loads(assessment, system)],
             explained=f"{plain(explanation.case, NAME)}, {explanation.end} end",

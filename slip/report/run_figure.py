@@ -4,8 +4,11 @@ from __future__ import annotations
 
 from typing import Any
 
+import matplotlib
 import numpy as np
 from matplotlib.axes import Axes
+from matplotlib.cm import ScalarMappable
+from matplotlib.colors import Normalize, to_rgba
 from matplotlib.figure import Figure
 from matplotlib.lines import Line2D
 
@@ -17,7 +20,8 @@ from slip.stiffness.run_table import RunTable
 
 Array = np.ndarray
 COLOURS = "cividis"  # even in lightness, alike for readers who tell red from green and who do not
-MARKERS = {STICK: "o", SLIPS: "s", OPEN: "x"}
+MARKERS = {"stick": "o", "stick, has slipped": "D", "slips": "s", "open": "x"}
+FILLED = ("stick, has slipped", "slips")
 MANY = 3000  # points beyond which they are stored as dots of a picture, not one by one
 DPI = 200
 
@@ -39,7 +43,7 @@ def run_figure(found: Examined, system: System, step: int | None = None, ink: In
     size = float(np.ptp(places, axis=0).max()) or 1.0
     span = np.maximum(np.ptp(places, axis=0), 0.15 * size) + 0.12 * size
     with look(ink):
-        height = float(np.clip(WIDTH * span[1] / span[0], 1.2, 4.2)) + 1.6
+        height = float(np.clip(WIDTH * span[1] / span[0], 1.2, 4.2)) + 1.5
         figure = Figure(figsize=(WIDTH, height), layout="constrained", dpi=DPI)
         axes = figure.add_subplot()
         axes.set_aspect("equal")
@@ -72,44 +76,36 @@ def _title(found: Examined, step: int) -> str:
 def _points(
     figure: Figure, axes: Axes, found: Examined, places: Array, step: int, system: System, ink: Ink
 ) -> list[Line2D]:
-    """Every point; those that slip are squares filled by their true slip, those that stick are rings of that colour."""
+    """Every point by its kind; those with true slip are filled by how much, open ones are crosses."""
     scale, unit = (1e3, "um") if system.length == "mm" else (1e6, "uin")
-    state = found.state[step]
-    slip = None if found.slips is None else np.hypot(*found.slips.vector[:, step]) * scale * system.out(1.0, "length")
-    most = 0.0 if slip is None else float(np.where(state == OPEN, 0.0, slip).max())
-    dots: dict[str, Any] = {"rasterized": len(state) > MANY, "s": float(np.clip(4000 / len(state), 2, 40))}
-    drawn, handles = None, []
-    for kind in (STICK, SLIPS, OPEN):
-        here = state == kind
+    state, moved = found.state[step], found.moved[step]
+    kinds = {
+        "stick": (state == STICK) & ~moved,
+        "stick, has slipped": moved,
+        "slips": state == SLIPS,
+        "open": state == OPEN,
+    }
+    slip = np.zeros(len(state)) if found.slips is None else np.hypot(*found.slips.vector[:, step])
+    slip = np.where(state == OPEN, 0.0, slip) * scale * system.out(1.0, "length")
+    most = float(slip.max())
+    shades = matplotlib.colormaps[COLOURS](slip / most) if most else np.tile(to_rgba(ink.weakest), (len(slip), 1))
+    style: dict[str, Any] = {"rasterized": len(state) > MANY, "s": float(np.clip(4000 / len(state), 2, 40))}
+    handles = []
+    for name, here in kinds.items():
         if not here.any():
             continue
-        x, y = places[here].T
-        marker = MARKERS[kind]
-        if kind == OPEN or slip is None or most == 0:
-            colour = {STICK: ink.shear, SLIPS: ink.weakest, OPEN: ink.faint}[kind]
-            face = {} if kind == OPEN else {"facecolors": colour if kind == SLIPS else "none"}
-            axes.scatter(
-                x,
-                y,
-                marker=marker,
-                linewidths=0.9,
-                **({"color": colour} if kind == OPEN else {"edgecolors": colour}),
-                **face,
-                **dots,
-            )
-        else:
-            coloured: dict[str, Any] = {"c": slip[here], "cmap": COLOURS, "vmin": 0.0, "vmax": most}
-            drawn = axes.scatter(x, y, marker=marker, linewidths=0.9, **coloured, **dots)
-            if kind == STICK:
-                drawn.set_facecolor("none")
-        filled = ink.line if kind == SLIPS else "none"
-        handles.append(
-            Line2D([], [], linestyle="none", marker=marker, color=ink.line, markerfacecolor=filled, label=POINT[kind])
+        colours = {"color": ink.faint} if name == "open" else {"edgecolors": ink.line, "facecolors": "none"}
+        filled: dict[str, Any] = {"edgecolors": ink.line, "facecolors": shades[here]}
+        look_of = filled if name in FILLED else colours
+        axes.scatter(places[here, 0], places[here, 1], marker=MARKERS[name], linewidths=0.5, **look_of, **style)
+        inside = ink.faint if name in FILLED else "none"
+        own: dict[str, Any] = {"linestyle": "none", "marker": MARKERS[name], "markerfacecolor": inside}
+        handles.append(Line2D([], [], color=ink.line, label=name, **own))
+    if most:
+        bar = figure.colorbar(
+            ScalarMappable(Normalize(0.0, most), COLOURS), ax=axes, location="bottom", shrink=0.8, aspect=30
         )
-    if drawn is not None:
-        from_zero = figure.colorbar(drawn, ax=axes, shrink=0.9)
-        from_zero.set_label(f"true slip in {unit}")
-        from_zero.outline.set_edgecolor(ink.faint)
+        bar.set_label(f"true slip in {unit}")
     return handles
 
 

@@ -8,8 +8,9 @@ from typing import Any
 import numpy as np
 
 from slip.base.units import System
+from slip.report.partial import short
 from slip.report.words import cut, plain, wrapped
-from slip.stiffness.run_found import MOTIONS, PARTS, POINT, STICK, Examined, Peak
+from slip.stiffness.run_found import MOTIONS, PARTS, POINT, Examined, Peak
 from slip.stiffness.run_notes import fine
 from slip.stiffness.run_own import OwnStiffness
 from slip.stiffness.run_points import Bin
@@ -53,7 +54,7 @@ def _force(found: Examined, system: System) -> Iterator[str]:
 
 
 def _between(low: float, high: float) -> str:
-    shown = f"{low:.4g}", f"{high:.4g}"
+    shown = f"{low:.6g}", f"{high:.6g}"
     return shown[0] if shown[0] == shown[1] else " to ".join(shown)
 
 
@@ -65,14 +66,12 @@ def _regimes(found: Examined, system: System) -> Iterator[str]:
         f"(points: {counts}; at the limit within {found.tolerance:.1%} of mu p)"
     )
     yield from _lines("regime", text)
-    if found.at_spring[step].any():
-        n = int(found.at_spring[step].sum())
-        text = f"{n} points stand at mu p and move by the elastic slip alone: true slip is about to begin there"
+    if n := int(found.at_spring[step].sum()):
+        text = f"of those that slip {n} at mu p with no motion but the elastic slip: true slip is about to begin there"
         yield from _lines("spring's limit", text)
-    if found.moved.any():
-        n = int(found.moved[-1].sum())
-        text = f"{n} points below mu p have true slip{_at(found, -1)}: they slipped before, or creep"
-        yield from _lines("moved, sticking", text)
+    if n := int(found.moved[-1].sum()):
+        text = f"of those that stick{_at(found, -1)} {n} with true slip: they slipped before, or creep"
+        yield from _lines("stick, moved", text)
 
 
 def _elastic(found: Examined, system: System) -> Iterator[str]:
@@ -90,7 +89,7 @@ def _elastic(found: Examined, system: System) -> Iterator[str]:
 
 
 def _k(value: float, system: System) -> str:
-    return f"{system.out(value, AREA):.4g}" if np.isfinite(value) else "no end"
+    return short(system.out(value, AREA)) if np.isfinite(value) else "no end"
 
 
 def _slip(found: Examined, system: System) -> Iterator[str]:
@@ -98,8 +97,8 @@ def _slip(found: Examined, system: System) -> Iterator[str]:
     if slips is None:
         yield from _lines("true slip", "not told apart from elastic slip")
         return
-    parts = ", ".join(f"{part:.0%} {fine(v, system)}" for part, v in zip(PARTS, slips.parts, strict=True))
-    yield from _lines("true slip", f"most {_peak(found, slips.largest, system)}; up to, of the area: {parts}")
+    parts = ", ".join(f"{part:.0%} within {fine(v, system)}" for part, v in zip(PARTS, slips.parts, strict=True))
+    yield from _lines("true slip", f"most {_peak(found, slips.largest, system)}; of the area {parts}")
     if slips.amplitude is not None and slips.path is not None:
         a, b = (plain(found.table.steps[i], 12) for i in slips.span)
         yield from _lines("amplitude", f"{_peak(found, slips.amplitude, system)}, steps {a} to {b}")
@@ -114,16 +113,19 @@ def _peak(found: Examined, peak: Peak, system: System) -> str:
 
 
 def _energy(found: Examined, system: System) -> Iterator[str]:
-    if found.energy is None:
+    if found.energy is None or found.energy_at_limit is None:
         return
-    unit = system.unit("energy")
-    total = system.out(float(found.energy.sum()), "energy")
-    point = int(found.energy.sum(axis=0).argmax())
-    most = system.out(float(found.energy.sum(axis=0)[point]), "energy")
-    text = f"{total:.4g} {unit} over all steps, most at id {plain(found.table.ids[point], 20)} ({most:.3g} {unit})"
-    if found.cycles is not None:
-        text += f"; {system.out(found.cycles.energy[-1], 'energy'):.4g} {unit} in the last cycle"
-    yield from _lines("energy", text)
+    unit, c = system.unit("energy"), found.cycles
+    kinds = [(found.energy, c.energy if c else (), "by mean tractions")]
+    if any(note.code == "run-steps-coarse" for note in found.notes):
+        kinds.append((found.energy_at_limit, c.energy_at_limit if c else (), "with mu p over the slip"))
+    for name, (energy, of_cycles, how) in zip(("energy", ""), kinds, strict=False):
+        points = energy.sum(axis=0)
+        total, most = (system.out(float(v), "energy") for v in (points.sum(), points.max()))
+        where = plain(found.table.ids[int(points.argmax())], 20)
+        text = f"{total:.4g} {unit} {how}, most at id {where} ({most:.3g} {unit})"
+        last = f"; {system.out(of_cycles[-1], 'energy'):.4g} {unit} in the last cycle" if of_cycles else ""
+        yield from _lines(name, text + last)
 
 
 def _steps(found: Examined, system: System) -> Iterator[str]:
@@ -240,7 +242,8 @@ def _slip_entry(found: Examined, system: System) -> dict[str, Any]:
         entry["energy"] = out(float(found.energy.sum()), "energy")
         entry["energy_at_limit"] = out(float(found.energy_at_limit.sum()), "energy")
     if c is not None:
-        kinds = (("left", c.net, "length"), ("path", c.path, "length"), ("energy", c.energy, "energy"))
+        kinds = [("left", c.net, "length"), ("path", c.path, "length"), ("energy", c.energy, "energy")]
+        kinds.append(("energy_at_limit", c.energy_at_limit, "energy"))
         entry["cycles"] = {name: [out(v, kind) for v in values] for name, values, kind in kinds}
         entry["cycles"] |= {"turns": [found.table.steps[i] for i in c.turns], "verdict": c.verdict}
     return entry
@@ -256,7 +259,7 @@ def _peak_entry(found: Examined, peak: Peak, system: System) -> dict[str, Any]:
 def bins_text(bins: tuple[Bin, ...], system: System) -> list[str]:
     """The curve of the stiffness over pressure as a small table."""
     k, p = system.unit(AREA), system.pressure
-    lines = [f"Stiffness over pressure [{k}]: the face's law, and what the run's sticking points tell"]
+    lines = [f"Stiffness over pressure [{k}]: the face's law; the run's points that stick"]
     lines.append(
         f"  {'p [' + p + ']':>12}{'points':>8}{'clamp':>8}{'law: low':>11}{'typical':>10}{'high':>10}{'run':>10}{'pairs':>7}"
     )

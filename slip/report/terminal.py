@@ -11,7 +11,7 @@ from slip.assess import Assessment
 from slip.base.notes import Note
 from slip.base.units import System
 from slip.report.checked import NO_SHEAR, WIDTH, case_lines, entries, other_lines
-from slip.report.partial import partial_line
+from slip.report.partial import partial_lines
 from slip.report.words import CAUTION, NOT_ASSESSED, at_most, check_name, columns, cut, factor, plain, wrapped
 from slip.verdict.checks import Check
 
@@ -183,11 +183,11 @@ def _ledger(assessment: Assessment, system: System) -> Iterator[str]:
 
 
 def _partial(assessment: Assessment, system: System, most: int) -> Sequence[str]:
-    """Partial slip at the governing end, or of the first case where the governing check has none."""
+    """Partial slip at the governing end, or of the first case where the governing check has none; of another where this tells nothing."""
     case, end = assessment.verdict.governing.case, assessment.verdict.governing.end
     names = [c.name for c in assessment.joint.cases]
     index = names.index(case) if case in names else 0
-    return at_most(wrapped(partial_line(assessment, index, end or "given", system), WIDTH), most, WIDTH)
+    return partial_lines(assessment, index, end or "given", system, WIDTH, most)
 
 
 def _cells(name: str, value: str, remark: str = "") -> str:

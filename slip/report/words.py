@@ -9,7 +9,8 @@ CAUTION = (
     "an aid to a qualified engineer. Back friction and preload by test or record; "
     "local codes, tests and licensed practice decide."
 )
-NOT_ASSESSED = "contact stiffness, cycling"
+NOT_ASSESSED = "contact stiffness of a model (slip penalty does), cycling"
+NOT_OF_PRESSED = "contact stiffness of a model, cycling"  # of a pressed contact, which slip penalty does not take
 CHECKS = {
     "gross_slip.per_bolt": "per bolt",
     "gross_slip.group": "group",

@@ -8,6 +8,7 @@ from slip.base.records import record
 from slip.stiffness.subject import Subject, constant
 from slip.stiffness.window import Response, Window, error, response
 
+ROUNDING = 1e-9  # a true slip below this part of the motion is none
 LARGE = 0.10  # an error that is worth a word
 
 
@@ -36,11 +37,16 @@ def _advice(
     subject: Subject, k: float, found: Response, errors: dict[str, dict[str, float]], recommended: dict[str, float]
 ) -> list[str]:
     """What to change, and why."""
-    m, say = found.motions, subject.joint.system.say
+    m, system = found.motions, subject.joint.system
+
+    def say(value: float, kind: str) -> str:
+        return f"{system.out(value, kind):.4g} {system.unit(kind)}"
+
     motion = m.elastic_slip + m.true_slip
+    true = m.true_slip if m.true_slip > ROUNDING * motion else 0.0
     said = [
-        f"of the {say(motion, 'length')} of motion in the contact {say(m.elastic_slip, 'length')} comes back "
-        f"and {say(m.true_slip, 'length')} is true slip"
+        f"of {say(motion, 'length')} of motion in the contact {say(m.elastic_slip, 'length')} comes back "
+        f"and {say(true, 'length')} is true slip"
     ]
     for purpose, value in recommended.items():
         wrong = {name: e for name, e in errors.get(purpose, {}).items() if not np.isnan(e) and e > LARGE}

@@ -88,7 +88,9 @@ def examine(
         energy=energy,
         energy_at_limit=at_limit,
         holds=holds(loads, t, table.g, limit),
-        cycles=None if energy is None or vector is None else _cycles(at, vector, energy, elastic, closed),
+        cycles=None
+        if energy is None or at_limit is None or vector is None
+        else _cycles(at, vector, (energy, at_limit), elastic, closed),
         notes=(),
     )
     return replace(found, notes=notes_of(found, system))
@@ -201,10 +203,12 @@ def _slips(vector: Array, area: Array, closed: Array, at: tuple[int, ...]) -> Sl
     return Slips(vector, Peak(float(size[step, point]), point, step), parts, amplitude, path, span)
 
 
-def _cycles(at: tuple[int, ...], vector: Array, energy: Array, elastic: float, closed: Array) -> Cycles | None:
+def _cycles(
+    at: tuple[int, ...], vector: Array, energies: tuple[Array, Array], elastic: float, closed: Array
+) -> Cycles | None:
     """The cycles, from the points that are closed at each turn."""
     stays = closed[list(at)].all(axis=0) if at else closed.all(axis=0)
-    return cycles(at, vector[:, :, stays], energy, elastic) if stays.any() else None
+    return cycles(at, vector[:, :, stays], energies, elastic) if stays.any() else None
 
 
 def _against(force: Array, clamp: tuple[float, float]) -> tuple[float, int]:

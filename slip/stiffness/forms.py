@@ -44,6 +44,7 @@ class NodeAreas:
 
     @property
     def positive(self) -> bool:
+        """Whether every area is above 0, so that each may hold a spring."""
         areas = (self.inside, self.midside_inside, self.centre)
         return all(area > 0 for area in areas if area is not None)
 

@@ -32,12 +32,16 @@ class Hold:
 @record
 class Cycles:
     """Cycles that close, oldest first; turns: the step at which each begins, and the last one's end. Of each: net slip and path of the
-    points that have most [mm], energy [mJ]. verdict: shakedown, comes back, walks, settles, or one cycle, which cannot tell."""
+    points that have most [mm], energy by mean tractions and with mu p over the slip [mJ].
+
+    verdict: shakedown, comes back, walks, settles, or one cycle, which cannot tell.
+    """
 
     turns: tuple[int, ...]
     net: tuple[float, ...]
     path: tuple[float, ...]
     energy: tuple[float, ...]
+    energy_at_limit: tuple[float, ...]
     verdict: str
 
 
@@ -130,16 +134,17 @@ def turns(loads: Array) -> tuple[int, ...]:
     return tuple(flats[i][1] for i in begin)
 
 
-def cycles(at: Sequence[int], slip: Array, energy: Array, elastic: float) -> Cycles | None:
-    """The cycles between the steps `at`; elastic: slip of the contact's own stiffness at its limit [mm], 0 where not known."""
+def cycles(at: Sequence[int], slip: Array, energies: tuple[Array, Array], elastic: float) -> Cycles | None:
+    """The cycles between the steps `at`, None for no whole one; energies: by mean tractions and at the limit, (S - 1, n) each [mJ];
+    elastic: slip of the contact's own stiffness at its limit [mm], 0 where not known."""
     if len(at) < 2:
         return None
     spans = list(zip(at, at[1:], strict=False))
     net = [float(np.hypot(*(slip[:, b] - slip[:, a])).max()) for a, b in spans]
     path = [float(path_of(slip[:, a : b + 1]).max()) for a, b in spans]
-    worked = [float(energy[a:b].sum()) for a, b in spans]
+    mean, limit = (tuple(float(energy[a:b].sum()) for a, b in spans) for energy in energies)
     least = max(ZERO * max(*path, elastic, 0.0), NOTHING)
-    return Cycles(tuple(at), tuple(net), tuple(path), tuple(worked), _verdict(net, path, least))
+    return Cycles(tuple(at), tuple(net), tuple(path), mean, limit, _verdict(net, path, least))
 
 
 def _verdict(net: list[float], path: list[float], least: float) -> str:

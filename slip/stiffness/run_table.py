@@ -13,7 +13,8 @@ import polars as pl
 from slip.base.errors import InputError, Problems
 from slip.base.records import record
 from slip.base.units import KINDS, Dimension, System, UnitError, parse_unit
-from slip.cases.form import COMMA, HEADER, POINT, SAMPLE, THOUSANDS, Form
+from slip.cases.form import COMMA, POINT, SAMPLE, THOUSANDS, Form
+from slip.cases.header import HEADER
 from slip.cases.parse import LINE, Broken, parse
 from slip.read.document import cut, refuse
 from slip.read.reader import nearest, show
@@ -85,6 +86,7 @@ def read_run(path: str | Path, *, units: System | None = None, decimal: str = ""
     if data[:4] == PARQUET:
         form, rows, broken = _of_parquet(data, units, file)
     else:
+        data = data.replace(b"\r\n", b"\n").replace(b"\r", b" ")  # a return alone ends no row
         form = _csv_form(data, units, decimal, file)
         rows, broken = parse(data[form.offset :], form, form.line)
     found = filled(rows, broken, form)
@@ -147,13 +149,13 @@ def _csv_form(data: bytes, units: System | None, decimal: str, file: str) -> For
     if start >= len(data):
         raise refuse("table-empty", file, "an empty file", "a header and rows", "write the table again", 1)
     offset = _end(data, start)
-    header = data[start:offset][:WIDEST].decode("utf-8", "replace").rstrip("\r\n")
+    header = data[start:offset][:WIDEST].decode("utf-8", "replace").rstrip("\n")
     separator = ";" if header.count(";") > header.count(",") else ","
     if separator not in header and "\t" in header:
         expected = '"," or ";" between the cells'
         raise refuse("table-separator", file, "tabs between the cells", expected, "save the table as CSV", blank + 1)
     names = next(csv.reader([header], delimiter=separator))
-    text = data[offset : offset + WIDEST].decode("utf-8", "replace").replace("\r", "")
+    text = data[offset : offset + WIDEST].decode("utf-8", "replace")
     rows = [row for row, _ in zip(csv.reader(io.StringIO(text), delimiter=separator), range(SAMPLE), strict=False)]
     rows = [row for row in rows if any(cell.strip() for cell in row)]
     if not rows:

@@ -141,6 +141,8 @@ def _normal(own: InterfaceValues | None) -> float | None:
 def common(w: Window, level: float = LEVELS[0]) -> tuple[float, float] | None:
     """The values that keep every quantity within a level; None where no value does."""
     names = [name for name in w.errors if not np.isnan(w.errors[name]).all()]
+    if not names:
+        return None
     lows, highs = [w.lowest[name][level] for name in names], [w.highest[name][level] for name in names]
     if any(v is None for v in (*lows, *highs)):
         return None
@@ -185,6 +187,10 @@ def _notes(subject: Subject, elements: Elements) -> list[Note]:
         notes.append(Note("interface-unknown", text, "interface.roughness"))
     if subject.reason:
         notes.append(Note("load-reduced", subject.reason, "case"))
+    model = subject.model(subject.stiffness or constant(values(subject)[0]))
+    notes += [
+        Note("model-range", text, "plate") for text in (*model.notes, *([model.outside] if model.outside else []))
+    ]
     if elements.element_size is not None:
         across = subject.width / max(elements.element_size)
         if across < LEAST_ACROSS:

@@ -104,7 +104,7 @@ def of_joint(found: Assessment) -> Subject | None:
         gross=gross,
         friction=joint.interface.friction_low,
         faces=joint.interface.parallel_faces,
-        model=lambda stiffness: choose(joint, patch, stiffness, load, clamp),
+        model=lambda stiffness: choose(joint, patch, stiffness, load, clamp, without_rim=True),
         stiffness=face_stiffness(joint),
         pressures=Pressures(mean / area, weighted * mean, float(patch.profile.max()) * float(clamp.max()), area),
         shear=plate_shear(joint),

@@ -30,6 +30,7 @@ STICK, INTERFACE = "stick", "interface"
 QUANTITIES = ("stiffness", "first slip", "slip length", "true slip", "energy", "load sharing")
 # A contact that does not give has a stress without bound at its ends: its first slip is a matter of the mesh, and no reference.
 WITHOUT = {STICK: ("first slip",), INTERFACE: ()}
+NEAR_NOTHING = 0.01  # an error below this part of a level is taken for none
 NOTHING = 1e-12  # below this part of what the contact can do a quantity is none, and has no error
 
 
@@ -187,6 +188,9 @@ def _edge(k: Array, error: Array, level: float, from_above: bool) -> float | Non
         return float(k[i]) if from_above else float("inf")
     if np.isnan(error[beyond]):
         return float(k[i])
-    low, high = np.log(max(error[i], 1e-300)), np.log(error[beyond])
-    part = (np.log(level) - low) / (high - low)
+    if error[i] < level * NEAR_NOTHING:  # at the reference itself, where no power law leads to
+        part = (level - error[i]) / (error[beyond] - error[i])
+    else:
+        low, high = np.log(error[i]), np.log(error[beyond])
+        part = (np.log(level) - low) / (high - low)
     return float(np.exp(np.log(k[i]) + part * (np.log(k[beyond]) - np.log(k[i]))))

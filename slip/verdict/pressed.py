@@ -39,11 +39,14 @@ def pressed_verdict(contact: PressedContact, slips: Mapping[tuple[int, str], Pre
 
 
 def _true_slip(contact: PressedContact, most: float, case: str, end: str, found: PressedSlip) -> Check:
-    """The largest true slip of the routes that tell it, at any reading of the face's stiffness."""
+    """The largest true slip of the routes that tell it, at any reading of the face's stiffness; out of their range it proves nothing."""
     if found.reason and found.reason != NO_SHEAR:
         return Check("true_slip", case, end, "", None, None, None, 0.0, False, True, found.reason)
     readings = [reading for route in found.routes for reading in (route, *route.band)]
     slip = max((reading.true_slip for reading in readings if reading.true_slip is not None), default=0.0)
     reserve = most / slip if slip > 0 else float("inf")
     said = against(slip, most)
+    if found.beyond and 0 < slip <= most:
+        said = f"not solved: {found.beyond}"
+        return Check("true_slip", case, end, "", None, None, None, None, False, True, said, solved=False)
     return Check("true_slip", case, end, "", None, None, None, reserve, bool(slip <= most), True, said)

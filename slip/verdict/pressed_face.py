@@ -9,7 +9,7 @@ from slip.friction.partial import NO_SHEAR
 from slip.joint.contact import PressedFace
 from slip.verdict.checks import Check
 from slip.verdict.gross_slip import LONE
-from slip.verdict.stage import Verdict, against, conclude
+from slip.verdict.stage import Verdict, conclude, judge_true_slip
 
 
 def face_verdict(face: PressedFace, slips: Mapping[tuple[int, str], FaceSlip]) -> Verdict:
@@ -26,19 +26,6 @@ def face_verdict(face: PressedFace, slips: Mapping[tuple[int, str], FaceSlip]) -
             holds, reserve = factor >= least, factor / least
             checks.append(Check(what, name, end, "", factor, factor, least, reserve, holds, decides, reason))
         if face.required.true_slip is not None:
-            checks.append(_true_slip(face.required.true_slip, name, end, found))
+            most = face.required.true_slip
+            checks.append(judge_true_slip(name, end, most, found.partial, found.reason))
     return conclude(checks, (), {})
-
-
-def _true_slip(most: float, case: str, end: str, found: FaceSlip) -> Check:
-    """The largest true slip of the three readings of the face's stiffness against the file's own limit [mm]."""
-    known = found.partial
-    reason = found.reason if known is None else "" if known.reason == NO_SHEAR else known.reason
-    if known is not None and known.wholly:  # there is no end to its slip
-        return Check("true_slip", case, end, "", None, None, None, 0.0, False, True, reason)
-    if known is None or reason:
-        said = f"not solved: {reason}"
-        return Check("true_slip", case, end, "", None, None, None, None, False, True, said, solved=False)
-    slip = max((reading.true_slip for reading in known.readings), default=0.0)
-    reserve = most / slip if slip > 0 else float("inf")
-    return Check("true_slip", case, end, "", None, None, None, reserve, bool(slip <= most), True, against(slip, most))

@@ -180,6 +180,8 @@ OWN = {
     "both ends": {"end": True},
     "own preload and thermal loss": {"preload_low": True, "thermal": True},
     "contact force": {"Fclamp": True},
+    "contact force at both ends by ratio": {"Fclamp": True, "ratio": True},
+    "own preload, ratio": {"preload_low": True, "thermal": True, "ratio": True},
     "contact force, credited": {"Fclamp": True, "credited": True},
     "true slip has a limit": {"true_slip": True},
     "a standard": {"standard": True},
@@ -204,6 +206,8 @@ def test_forces_of_their_own_on_each_bolt(asked: dict[str, bool], tmp_path: Path
     if asked.get("preload_low"):
         columns["preload_low[N]"] = [None if i % 4 == 0 else 60000.0 + 10 * i for i in range(rows)]
         columns["thermal[N]"] = [None if i % 3 == 0 else 7.0 * i for i in range(rows)]
+    if asked.get("ratio"):
+        columns["ratio"] = np.full(rows, 0.25)
     axial = "bolt_share = 0.15"
     if asked.get("Fclamp"):
         columns["Fclamp[N]"] = draw.uniform(30000, 99000, size=rows)

@@ -188,8 +188,10 @@ def test_the_interface_has_its_own_value_and_elastic_slip() -> None:
         low, typical, high = own.k_t[name]
         assert (low, high) == pytest.approx((typical / 2, typical * 2))
     assert found.recommended["interface"] == own.typical
-    # a constant cannot follow the pressure to the rim: slip starts near zero load, which the face itself does not show
-    assert own.constant.motions.first_slip_factor < 0.05 * own.own.motions.first_slip_factor
+    # a constant cannot follow the pressure to the rim: it slips there too early, and its cycles cost more
+    face, fixed = own.own.motions, own.constant.motions
+    assert fixed.first_slip_factor < 0.9 * face.first_slip_factor
+    assert fixed.energy_per_cycle > 2 * face.energy_per_cycle  # type: ignore[operator]
     assert found.serves_all["interface"] is None
 
 

@@ -147,6 +147,16 @@ def test_a_layer_adds_elastic_slip(run_check):
         (contact('shape = "sphere"\nnormal_force = 5'), "missing-key", "the radius of a sphere"),
         (contact('shape = "cylinder"\nradius = 5\nnormal_force = 5'), "missing-key", "the length of a cylinder"),
         (contact(SPHERE).replace(f"[[body]]\n{STEEL}\n", "", 1), "wrong-count", "the two bodies"),
+        (contact(SPHERE + "\nlength = 5"), "key-not-of-shape", 'only radius for shape = "sphere"'),
+        (contact(SPHERE + "\nflat_width = 5"), "key-not-of-shape", 'only radius for shape = "sphere"'),
+        (contact(CYLINDER + "\nflat_width = 5"), "key-not-of-shape", 'only radius and length for shape = "cylinder"'),
+        (
+            contact('shape = "flat"\nflat_width = 5\nradius = 3\nnormal_force = 5'),
+            "key-not-of-shape",
+            'only flat_width and length for shape = "flat"',
+        ),
+        (contact(SPHERE, interface="tangential_stiffness = [1e-200, 1e4]"), "out-of-limits", "from 0.001 N/mm^3"),
+        (contact(SPHERE, interface="tangential_stiffness = [1e4, 1e13]"), "out-of-limits", "to 1e+12 N/mm^3"),
     ],
 )
 def test_bad_contacts_say_what_to_write(run_check, text, code, words):
@@ -204,3 +214,10 @@ def test_one_rule_for_the_answer_to_slip(run_check):
     assert answer(group, open_) == "holds"
     assert answer(group, ("standard.EN 1993-1-8", False, False)) == "not assessed"
     assert answer(("gross_slip.per_bolt", False, True), group, open_) == "fails"
+
+
+def test_the_remedy_of_a_foreign_size_names_the_shapes_that_have_it(run_check):
+    found, _ = run_check(contact('shape = "flat"\nflat_width = 5\nradius = 3\nnormal_force = 5'))
+    (error,) = found["errors"]
+    assert error["remedy"] == 'leave radius out, or write shape = "sphere" or "cylinder" or "rounded flat"'
+    assert (error["key"], error["line"]) == ("contact.radius", 6)

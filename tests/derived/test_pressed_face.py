@@ -43,6 +43,7 @@ kind = "static"
 
 
 BARS = plate("[-50, -30, 300, 30]", 12, "right") + plate("[-300, -30, 50, 30]", 12, "left")
+LONG = plate("[-120, -30, 600, 30]", 12, "right") + plate("[-600, -30, 120, 30]", 12, "left")
 SQUARE = plate("[0, 0, 50, 50]", 12) + plate("[0, 0, 50, 80]", 12)
 
 
@@ -239,7 +240,22 @@ def test_limit_of_true_slip(run_check):
     high = face(
         BARS, "shear = [30000, 0]", "tangential_stiffness = [12000, 12000]\nplate_shear = false", limit.format(1.58e-3)
     )
-    assert end(run_check, high)[1]["holds"]
+    unknown, code = end(run_check, high)[1:]  # 8 thicknesses: the slip is not known to 10 %
+    (said,) = {c["reason"] for c in unknown["checks"] if c["check"] == "true_slip"}
+    assert code == 3 and not unknown["holds"] and "shorter than 16 thicknesses" in said
+    slender = face(
+        LONG, "shear = [30000, 0]", "tangential_stiffness = [500, 500]\nplate_shear = false", limit.format(0.1)
+    )
+    assert end(run_check, slender)[1]["holds"]
+
+
+def test_points_over_a_face_leave_the_stretch_out(run_check):
+    """Two squares of 50 mm at 15 kN: F L/EA = 15 000 x 50/(210 000 x 12 x 50) = 0.0060 mm; true slip is 0, up to 6.0 um more."""
+    limit = "[required]\ntrue_slip = {}"
+    got, found, code = end(run_check, face(SQUARE, "shear = [15000, 0]", more=limit.format(0.005)))
+    assert got["partial_slip"]["stretch_left_out"] == pytest.approx(15000 * 50 / (210000 * 12 * 50), rel=1e-9)
+    assert code == 3 and not found["holds"]
+    assert end(run_check, face(SQUARE, "shear = [15000, 0]", more=limit.format(0.0061)))[2] == 0
 
 
 APART = plate("[0, 0, 50, 50]", 12) + plate("[60, 0, 90, 50]", 12)
@@ -341,3 +357,11 @@ def test_screen(tmp_path, capsys):
     assert main(["check", str(path), "--json", "--units", "lbf in"]) == 0
     found = json.loads(capsys.readouterr().out)
     assert found["pressed_face"]["force"] == pytest.approx(360000 / 4.4482216152605, rel=1e-9)
+
+
+def test_the_first_line_names_what_is_not_solved(tmp_path, capsys):
+    path = tmp_path / "face.toml"
+    path.write_text(face(BARS, "shear = [30000, 0]", more='[required]\ntrue_slip = "1 mm"'), encoding="utf-8")
+    assert main(["check", str(path)]) == 3
+    said = " ".join(capsys.readouterr().out.split())
+    assert said.startswith("NOT SOLVED: true slip: ") and "shorter than 16 thicknesses" in said.partition("(pull")[0]

@@ -174,6 +174,48 @@ MUTATIONS = (
         '"y": -arms[1], "V_x": vx',
         "tests/derived/test_pressed_face.py",
     ),
+    Mutation(
+        "other end of a ratio in a table",
+        "cases/acting.py",
+        "return ratio * given + 0.0",
+        "return -ratio * given + 0.0",
+        "tests/derived/test_case_tables.py",
+    ),
+    Mutation(
+        "which end of a case governs in a table",
+        "cases/judge.py",
+        "np.where(_tied_first(reserve[0], reserve[1]), 0, 1)",
+        "np.where(_tied_first(reserve[0], reserve[1]), 1, 0)",
+        "tests/derived/test_case_tables.py",
+    ),
+    Mutation(
+        "an empty cell of a table is not zero",
+        "cases/rows.py",
+        "yield pl.col(name).is_null(), words(",
+        "yield pl.col(name).is_infinite(), words(",
+        "tests/unit/test_bad_tables.py",
+    ),
+    Mutation(
+        "slip of the nearest point in the group limit",
+        "friction/march/descent.py",
+        "turn = (z[0] - u[0]) / lever[0]",
+        "turn = (z[0] + u[0]) / lever[0]",
+        "tests/derived/test_limit.py",
+    ),
+    Mutation(
+        "factor that the forces of the group limit carry",
+        "friction/march/motions.py",
+        "return (self.along * fx + self.about * turn) / self.size, balanced",
+        "return (self.along * fx - self.about * turn) / self.size, balanced",
+        "tests/derived/test_limit.py",
+    ),
+    Mutation(
+        "size of a contact against its radius",
+        "friction/pressed/range.py",
+        "share[1] > SMALL",
+        "share[1] < SMALL",
+        "tests/derived/test_pressed_range.py",
+    ),
 )
 
 

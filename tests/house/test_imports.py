@@ -218,7 +218,7 @@ def names_in(tree: ast.AST) -> set[str]:
 def test_data_files_are_read_in_one_place():
     """base.tables knows where slip/data lies and reads it; all others ask it for rows."""
     reads_csv = {m for m in TREES if "csv" in imported(m, TREES[m])}
-    users = {"read.bolt_list", "cases.form", "cases.parse", "cases.stream", "stiffness.run_table"}
+    users = {"read.bolt_list", "cases.form", "cases.header", "cases.parse", "cases.stream", "stiffness.run_table"}
     assert reads_csv <= {"base.tables"} | users, "the others read tables of the user"
     knows_its_place = {m for m in TREES if "__file__" in names_in(TREES[m])}
     assert knows_its_place <= {"base.tables", "report.page"}, "report.page finds its templates"

@@ -6,6 +6,7 @@ import ast
 import csv
 import re
 from pathlib import Path
+from typing import Any
 
 import pytest
 
@@ -15,8 +16,9 @@ from slip.base.tables import DATA
 SOURCE = Path(slip.__file__).resolve().parent
 CODE = re.compile(r"[a-z][a-z0-9]*(-[a-z0-9]+)*")
 KINDS = ("error", "assumption", "warning", "unproven")
-# What a call with a code says, and at which argument its code stands; in any other call a code is only handed on.
-CALLS = {
+# What a call with a code says, and at which argument, or which of several, its code stands; in any other call a code is only
+# handed on.
+CALLS: dict[str, tuple[Any, ...]] = {
     "InputError": ("error", 0),
     "UnitError": ("error", 0),
     "refuse": ("error", 0),
@@ -26,7 +28,7 @@ CALLS = {
     "fail_at": ("error", 1),
     "stop_line": ("error", 2),
     "_one": ("error", 2),
-    "_fault": ("error", 2),
+    "_fault": ("error", 1, 2),
     "_looked_up": ("error", 3),
     "_kind_of": ("error", 4),
     "assume": ("assumption", 0),
@@ -93,10 +95,9 @@ def used(text: str) -> set[tuple[str, str]]:
         for node in ast.walk(function):
             if not isinstance(node, ast.Call) or called(node) not in CALLS:
                 continue
-            kind, index = CALLS[called(node)]
-            given = [keyword.value for keyword in node.keywords if keyword.arg == "code"] or node.args[
-                index : index + 1
-            ]
+            kind, *places = CALLS[called(node)]
+            given = [keyword.value for keyword in node.keywords if keyword.arg == "code"]
+            given = given or [node.args[i] for i in places if i < len(node.args)]
             for argument in given:
                 texts = names.get(argument.id, []) if isinstance(argument, ast.Name) else constants(argument)
                 found |= {(kind, code) for code in texts if CODE.fullmatch(code.replace("*", "x"))}

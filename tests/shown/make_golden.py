@@ -23,6 +23,7 @@ COMMANDS = {
     **{f"{path.stem}.txt": ["check", f"examples/{path.name}"] for path in EXAMPLES},
     "jib.txt": ["cases", "examples/jib.toml", "examples/jib.csv", "--top", "5"],
     "tray_si.txt": ["check", "examples/tray.toml", "--units", "N mm"],
+    "penalty_bracket.txt": ["penalty", "examples/bracket.toml"],
     "explain_bracket.txt": ["explain", "examples/bracket.toml"],
     "explain_bars.txt": ["explain", "examples/bars.toml"],
     "explain_pad.txt": ["explain", "examples/pad.toml"],

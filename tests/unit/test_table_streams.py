@@ -14,6 +14,7 @@ from slip import cli
 from slip.base.errors import Problems
 from slip.cases import gather, stream
 from slip.cases.form import csv_form
+from slip.cases.marks import Marks
 from slip.cases.run import Interrupted, check_table
 from slip.cases.stream import Table, last_case
 from slip.cases.summary import Summary
@@ -234,3 +235,36 @@ def test_summaries_add_up(folder: Path) -> None:
     assert [w.reserve for w in found.summary.worst] == sorted(w.reserve for w in found.summary.worst)
     assert found.summary.codes[1] == sum(w.code == 1 for w in found.summary.worst)
     assert Table(folder / "cases.csv", found.joint).form.said == found.form.said
+
+
+@pytest.mark.parametrize("scattered", [True, False])
+def test_a_changed_table_is_not_gone_on_with(folder: Path, scattered: bool) -> None:
+    """Parquet, or cases in no order: the whole table is compared, not its size alone."""
+    table = "cases.csv" if scattered else "cases.parquet"
+    if scattered:
+        pl.read_csv(folder / table).sort("bolt", maintain_order=True).write_csv(folder / table)
+        gather.ROWS, kept = 100, gather.ROWS
+    try:
+        with pytest.raises(Interrupted):
+            in_chunks(folder, table, chunk_size=100_000 if scattered else 90, progress=stop_after(2))
+        data = (folder / table).read_bytes()
+        at = data.rindex(b"case 299") if scattered else len(data) // 2
+        (folder / table).write_bytes(data[:at] + bytes([data[at] ^ 1]) + data[at + 1 :])
+        with pytest.raises(Problems) as caught:
+            in_chunks(folder, table, chunk_size=90, resume=True)
+    finally:
+        if scattered:
+            gather.ROWS = kept
+    assert caught.value.errors[0].code in ("resume-changed", "table-broken")
+
+
+def test_marks_are_found_again() -> None:
+    draw, marks, added = np.random.default_rng(3), Marks(), []
+    for _ in range(40):
+        fresh = draw.integers(0, 2**63, size=int(draw.integers(0, 50)), dtype=np.uint64)
+        assert not marks.has_any(fresh)
+        marks.add(fresh)
+        added += fresh.tolist()
+    for mark in added:
+        assert marks.has_any(np.array([mark, 1], dtype=np.uint64))
+    assert not marks.has_any(np.array([2**63], dtype=np.uint64))

@@ -8,6 +8,7 @@ import pytest
 
 from slip import cli
 from slip.base.errors import Problems
+from slip.commands.outcome import write
 from slip.read.build import read
 
 WRONG = "format = 1\n[bolt]\nthread = 16\n"
@@ -40,7 +41,7 @@ def test_a_report_is_written_beside_and_then_replaced(tmp_path: Path, monkeypatc
         return replace(self, other)
 
     monkeypatch.setattr(Path, "replace", watched)
-    cli._write(target, "new", source=tmp_path / "joint.toml")
+    write(target, "new", [tmp_path / "joint.toml"])
     assert seen == [("new", "old")]
     assert [p.name for p in tmp_path.iterdir()] == ["report.html"]
     assert target.read_text() == "new"
@@ -57,7 +58,7 @@ def test_a_write_that_fails_leaves_the_old_report_whole(tmp_path: Path, monkeypa
 
     monkeypatch.setattr(Path, "write_text", full)
     with pytest.raises(Problems) as caught:
-        cli._write(target, "new text", source=tmp_path / "joint.toml")
+        write(target, "new text", [tmp_path / "joint.toml"])
     (error,) = caught.value.errors
     assert (error.code, error.file) == ("not-written", str(target))
     assert [p.name for p in tmp_path.iterdir()] == ["report.html"]
@@ -68,7 +69,7 @@ def test_a_report_never_replaces_the_joint_file(tmp_path: Path, capsys: pytest.C
     path = tmp_path / "joint.toml"
     path.write_text(WRONG)
     with pytest.raises(Problems) as caught:
-        cli._write(path, "report", source=tmp_path / "." / "joint.toml")
+        write(path, "report", [tmp_path / "." / "joint.toml"])
     assert caught.value.errors[0].code == "report-over-input"
     assert path.read_text() == WRONG
 

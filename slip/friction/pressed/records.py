@@ -57,6 +57,7 @@ class PressedSlip:
 
     gross_slip_load [N]; safety: that over the shear, infinite without shear; size [mm] and peak_pressure [MPa] of the contact;
     edge_stress [MPa]: the first that a route tells; both routes, empty with a `reason` where the load slips wholly or is nothing;
+    beyond: why the contact lies out of the range of both routes, '' where it does not;
     parts: the calculation, by titles.
     """
 
@@ -70,6 +71,7 @@ class PressedSlip:
     curves: Curves
     notes: tuple[str, ...]
     reason: str
+    beyond: str
     parts: Mapping[str, Trace]
 
     def difference(self, key: str) -> float | None:

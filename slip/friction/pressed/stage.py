@@ -13,8 +13,9 @@ from slip.friction.closed import bodies, whole
 from slip.friction.faces import FaceStiffness
 from slip.friction.pressed.closed import Asked, closed_route, closed_traction, pressure
 from slip.friction.pressed.pair import FAR, Pair, pair
+from slip.friction.pressed.range import Range, range_of
 from slip.friction.pressed.records import NO_SHEAR, Curves, PressedSlip, Route
-from slip.friction.pressed.stepped import NAME, Stepped, stepped_route
+from slip.friction.pressed.stepped import NAME, Kept, stepped_route
 from slip.joint.contact import PressedContact
 from slip.joint.loads import Case
 
@@ -24,7 +25,7 @@ INSIDE = 0.985  # of a sharp flat, whose pressure has no bound at the edge
 DIGITS = 5  # of the step's numbers that its residual vouches for
 LIKE = 0.2  # Dundurs' beta up to which tangential tractions hardly change the pressure
 NOTHING = np.empty(0)
-PARTS = ("contact", "load", "gross slip", "closed form", "stiffness of the face", NAME)
+PARTS = ("contact", "range", "load", "gross slip", "closed form", "stiffness of the face", NAME)
 STEP: dict[str, str] = {"source": "step", "basis": "derived"}
 TOLD = {
     "displacement": ("motion of the bodies", "delta", "mm"),
@@ -40,18 +41,16 @@ TOLD = {
 
 def pressed_slips(c: PressedContact, progress: Progress | None = None) -> Mapping[tuple[int, str], PressedSlip]:
     """Partial slip at every end of every case; ends that ask for the same are worked out once."""
-    kept: dict[tuple[float, ...], Stepped] = {}
+    kept = Kept()
     ends = [(i, end) for i, case in enumerate(c.cases) for end, _ in case.ends]
     return {(i, end): pressed_slip(c, c.cases[i], end, kept) for i, end in told(ends, progress)}
 
 
-def pressed_slip(
-    c: PressedContact, case: Case, end: str, kept: dict[tuple[float, ...], Stepped] | None = None
-) -> PressedSlip:
+def pressed_slip(c: PressedContact, case: Case, end: str, kept: Kept | None = None) -> PressedSlip:
     """Partial slip at one end of a case by both routes, at the lowest friction.
 
     At a constant normal force the energy of a cycle depends on the range of the shear alone, so it is that of +- half the range. The
-    bulk stress is in phase with the shear and has its value at the largest shear of the case. kept: steps that were made before.
+    bulk stress is in phase with the shear and has its value at the largest shear of the case. kept: what steps of the same contact share.
     """
     parts = {title: Trace() for title in PARTS}
     load = dict(case.ends)[end].shear
@@ -64,41 +63,41 @@ def pressed_slip(
         swing = float(trace("half range of the shear", whole.half_range, Q_1=max(reach), Q_2=min(reach)))
     most = max(abs(one) for one in reach)
     asked = Asked(shear, swing, c.interface.friction_low, c.bulk_stress * shear / most if most else 0.0)
-    return _slip(c, ready, asked, parts, {} if kept is None else kept)
+    return _slip(c, ready, asked, parts, Kept() if kept is None else kept)
 
 
-def _slip(
-    c: PressedContact, ready: Pair, asked: Asked, parts: dict[str, Trace], kept: dict[tuple[float, ...], Stepped]
-) -> PressedSlip:
+def _slip(c: PressedContact, ready: Pair, asked: Asked, parts: dict[str, Trace], kept: Kept) -> PressedSlip:
     trace = parts["gross slip"]
     gross = float(trace("gross-slip load", law.capacity, mu=asked.mu, m=1, clamp=c.normal_force))
-    notes = tuple(_notes(c, ready))
+    held = range_of(c, ready, parts["range"])
+    held = Range((*held.notes, *_notes(c, ready)), held.beyond)
     if asked.shear == 0:
-        return _without(ready, asked, gross, float("inf"), notes, NO_SHEAR, parts)
+        return _without(ready, asked, gross, float("inf"), held, NO_SHEAR, parts)
     safety = float(trace("safety against gross slip", law.safety, F_max=gross, F_s=asked.shear))
     if not max(asked.shear, asked.swing or 0.0) < gross:
         reason = f"slips wholly at {c.system.say(gross, 'force')}; nothing beyond is computed"
-        return _without(ready, asked, gross, safety, notes, reason, parts)
+        return _without(ready, asked, gross, safety, held, reason, parts)
     closed = closed_route(c, ready, asked, parts["closed form"])
-    key = (asked.shear, -1.0 if asked.swing is None else asked.swing, asked.bulk)
-    stepped = kept[key] if key in kept else kept.setdefault(key, stepped_route(c, ready, asked))
+    stepped = stepped_route(c, ready, asked, kept)
     if ready.stiffness is not None:
         parts["stiffness of the face"] = _readings(ready.stiffness)
     _record(stepped.route, parts[NAME])
     edge = closed.edge_stress if closed.edge_stress is not None else stepped.route.edge_stress
-    notes = (*notes, *_compared(c, ready, closed, stepped.route))
+    notes = (*held.notes, *_compared(c, ready, closed, stepped.route))
     x, bound = _line(ready, asked.mu)
     curves = Curves(x, bound, closed_traction(ready, asked, x, closed.stick_shift), stepped.x, stepped.traction)
     routes = (closed, stepped.route)
-    return PressedSlip(asked.shear, gross, safety, ready.size, ready.peak, edge, routes, curves, notes, "", parts)
+    size, peak = ready.size, ready.peak
+    return PressedSlip(asked.shear, gross, safety, size, peak, edge, routes, curves, notes, "", held.beyond, parts)
 
 
 def _without(
-    ready: Pair, asked: Asked, gross: float, safety: float, notes: tuple[str, ...], reason: str, parts: dict[str, Trace]
+    ready: Pair, asked: Asked, gross: float, safety: float, held: Range, reason: str, parts: dict[str, Trace]
 ) -> PressedSlip:
     """No routes, and why."""
     curves = Curves(*_line(ready, asked.mu), NOTHING, NOTHING, NOTHING)
-    return PressedSlip(asked.shear, gross, safety, ready.size, ready.peak, None, (), curves, notes, reason, parts)
+    size, peak, notes = ready.size, ready.peak, held.notes
+    return PressedSlip(asked.shear, gross, safety, size, peak, None, (), curves, notes, reason, held.beyond, parts)
 
 
 def _line(ready: Pair, mu: float) -> tuple[Array, Array]:
