@@ -58,7 +58,7 @@ def run(asked: argparse.Namespace, progress: Progress | None) -> Outcome:
     if asked.report:
         from slip.report.penalty_page import penalty_page
 
-        write(Path(asked.report), penalty_page(found, units(asked)), inputs)
+        write(Path(asked.report), penalty_page(found, units(asked), ran), inputs)
     if asked.json:
         return Outcome(penalty_json(found, units(asked), ran))
     return Outcome(penalty_text(found, units(asked), ran))

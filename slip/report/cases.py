@@ -77,11 +77,11 @@ def _lines(
         yield _part("written", str(found.out))
     if found.refused:
         yield _part("", f"rows refused: {found.refused}")
+    if top is not None:
+        yield from _table(near[:top])
     yield from _notes("Assumed", [note.text for note in found.assumptions], 4)
     yield from _notes("Warnings", [note.text for note in found.warnings], 20)
     yield from wrapped(f"Caution: {CAUTION}", WIDTH)
-    if top is not None:
-        yield from _table(near[:top])
 
 
 def _notes(name: str, texts: Sequence[str], most: int) -> Iterator[str]:

@@ -29,15 +29,22 @@ from slip.report.penalty_words import (
     titled,
 )
 from slip.report.rows import NAME, TEXT, Row, Table
+from slip.report.run_figure import run_picture
+from slip.report.run_lines import bins_text, examined_text
 from slip.report.words import CAUTION, plain
+from slip.stiffness.run_found import Examined
+from slip.stiffness.run_points import over_pressure
 from slip.stiffness.stage import Penalty
 from slip.stiffness.window import LEVELS, QUANTITIES, Window
 
 NOTHING = 1e-9  # of the larger motion: the smaller is none
 
 
-def penalty_page(found: Penalty, units: System | None = None) -> str:
-    """The answer as one HTML page without script and without any reference outward; same input, same bytes."""
+def penalty_page(found: Penalty, units: System | None = None, ran: Examined | None = None) -> str:
+    """The answer as one HTML page without script and without any reference outward; same input, same bytes.
+
+    ran: what a run of the model found on its contact.
+    """
     joint = found.joint
     system = units or joint.system
     return (
@@ -57,6 +64,7 @@ def penalty_page(found: Penalty, units: System | None = None) -> str:
             windows=[_window_table(found, w, system) for w in found.windows],
             upper=_upper_table(found, system),
             present=_present(found, system),
+            run=None if ran is None else _run(found, ran, system),
             expected=_expected_table(found, system),
             tests=[_test(text) for text in found.card.tests],
             carries=plain(found.card.carries, NAME),
@@ -66,6 +74,13 @@ def penalty_page(found: Penalty, units: System | None = None) -> str:
             warnings=noted((*joint.warnings, *found.notes)),
         )
     )
+
+
+def _run(found: Penalty, ran: Examined, system: System) -> dict[str, Any]:
+    """What a run found, in the terminal's words, with the map of its points."""
+    bins = over_pressure(ran, found.subject.stiffness)
+    lines = [*examined_text(ran, system), "", *bins_text(bins, system)]
+    return {"picture": run_picture(ran, system), "text": "\n".join(lines)}
 
 
 def _answer(found: Penalty, purpose: str, system: System) -> dict[str, Any]:

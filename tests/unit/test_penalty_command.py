@@ -51,6 +51,18 @@ def test_a_run_is_examined(folder: Path, capsys: pytest.CaptureFixture[str]) -> 
     assert f"{1 - sticking:.1%} of the clamp slips" in said and max(map(len, said.split("\n"))) <= 80
 
 
+def test_the_page_has_the_run(folder: Path) -> None:
+    options = ["--interface", "run.csv", "--motion", "total", "--report"]
+    pages = []
+    for name in ("one.html", "two.html"):
+        assert cli.main(["penalty", "joint.toml", *options, name]) == 0
+        pages.append(Path(name).read_text(encoding="utf-8"))
+    assert pages[0] == pages[1] and "What the run found on its contact" in pages[0]
+    assert "Map of the contact" in pages[0] and "of the clamp slips" in pages[0]
+    assert cli.main(["penalty", "joint.toml", "--report", "three.html"]) == 0
+    assert "What the run found" not in Path("three.html").read_text(encoding="utf-8")
+
+
 def test_the_motion_has_to_be_declared(folder: Path, capsys: pytest.CaptureFixture[str]) -> None:
     assert cli.main(["penalty", "joint.toml", "--interface", "run.csv"]) == 2
     said = capsys.readouterr().err
