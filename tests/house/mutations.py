@@ -24,7 +24,7 @@ WITHOUT = shutil.ignore_patterns("__pycache__", ".*_cache", ".hypothesis")
 
 
 class Mutation(NamedTuple):
-    """A change of a file below slip/: `before` stands in it once; `test` is the quick file that must see it."""
+    """A change of a file below slip/: `before` stands in it once; `test` is the quick file, or the test in one, that must see it."""
 
     name: str
     file: str
@@ -179,42 +179,42 @@ MUTATIONS = (
         "cases/acting.py",
         "return ratio * given + 0.0",
         "return -ratio * given + 0.0",
-        "tests/derived/test_case_tables.py",
+        "tests/derived/test_table_traps.py::test_both_ends_count",
     ),
     Mutation(
         "which end of a case governs in a table",
         "cases/judge.py",
         "np.where(_tied_first(reserve[0], reserve[1]), 0, 1)",
         "np.where(_tied_first(reserve[0], reserve[1]), 1, 0)",
-        "tests/derived/test_case_tables.py",
+        "tests/derived/test_table_traps.py::test_both_ends_count",
     ),
     Mutation(
         "an empty cell of a table is not zero",
         "cases/rows.py",
         "yield pl.col(name).is_null(), words(",
         "yield pl.col(name).is_infinite(), words(",
-        "tests/unit/test_bad_tables.py",
+        "tests/unit/test_bad_tables.py::test_a_row_that_is_refused",
     ),
     Mutation(
         "slip of the nearest point in the group limit",
         "friction/march/descent.py",
         "turn = (z[0] - u[0]) / lever[0]",
         "turn = (z[0] + u[0]) / lever[0]",
-        "tests/derived/test_limit.py",
+        "tests/derived/test_limit.py::test_hardly_a_case_of_six_bolts_is_left",
     ),
     Mutation(
         "factor that the forces of the group limit carry",
         "friction/march/motions.py",
         "return (self.along * fx + self.about * turn) / self.size, balanced",
         "return (self.along * fx - self.about * turn) / self.size, balanced",
-        "tests/derived/test_limit.py",
+        "tests/derived/test_limit.py::test_hardly_a_case_of_six_bolts_is_left",
     ),
     Mutation(
         "size of a contact against its radius",
         "friction/pressed/range.py",
         "share[1] > SMALL",
         "share[1] < SMALL",
-        "tests/derived/test_pressed_range.py",
+        "tests/derived/test_pressed_range.py::test_a_contact_that_is_not_small_is_told",
     ),
 )
 

@@ -25,7 +25,7 @@ def test_every_change_stands_where_it_is_said_to(mutations, tmp_path):
     """Quick: a formula that was rewritten takes its mutation along."""
     assert len({m.name for m in mutations.MUTATIONS}) == len(mutations.MUTATIONS) >= 12
     for mutation in mutations.MUTATIONS:
-        assert (ROOT / mutation.test).exists()
+        assert (ROOT / mutation.test.partition("::")[0]).exists()
         text = (ROOT / "slip" / mutation.file).read_text(encoding="utf-8")
         assert text.count(mutation.before) == 1, f"{mutation.name}: adapt it in {SCRIPT.name}"
         assert mutation.before != mutation.after
